@@ -1,0 +1,151 @@
+//! The one door: what the page, a script under Node and the tests call. Plain Rust, so that it is tested
+//! and fuzzed natively; [`crate::wasm`] only carries values across.
+
+use crate::bench::Bench;
+use crate::bench::field::{FieldRow, field, fields};
+use crate::bench::reader::Reader;
+use crate::explore::solve::{Solution, solve};
+use crate::explore::sweep::{Sweep, sweep};
+use crate::fault::{Allowed, Code, Fault, Faults};
+use crate::quantity::number::DecimalMark;
+use crate::quantity::write;
+use crate::questions::{Answer, QUESTIONS, Question};
+use crate::record::{self, CertificateTable, Choices, ResponsivityTable};
+use crate::tree::Tree;
+use crate::typed;
+use serde::Serialize;
+
+/// An answer with what was asked beside it.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Asked {
+    /// The answer itself.
+    #[serde(flatten)]
+    pub answer: Answer,
+    /// The answer's numbers over a range of one number of the bench.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub sweep: Option<Sweep>,
+    /// The value of one number of the bench at which the answer is as wanted.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub solve: Option<Solution>,
+}
+
+/// A question as the outside sees it.
+#[derive(Debug, Serialize)]
+pub struct QuestionRow {
+    /// Its name.
+    pub name: &'static str,
+    /// The question in plain words.
+    pub asks: &'static str,
+    /// The pointers that it reads; a part stands for all of its fields.
+    pub fields: &'static [&'static str],
+}
+
+/// All questions.
+pub fn questions() -> Vec<QuestionRow> {
+    let row = |question: &Question| QuestionRow {
+        name: question.name,
+        asks: question.asks,
+        fields: question.fields,
+    };
+    QUESTIONS.iter().map(row).collect()
+}
+
+/// All numbers of a bench.
+pub fn field_rows() -> Vec<FieldRow> {
+    fields().map(FieldRow::from).collect()
+}
+
+/// Asks a question of a bench.
+pub fn ask(question: &str, bench: &Tree, options: &Tree) -> Result<Asked, Faults> {
+    let question = find_question(question)?;
+    let mut faults = Faults::new();
+    let bench = Bench::from_tree(bench).map_err(|found| faults.extend(found)).ok();
+    let mut reader = Reader::strict();
+    let options = reader.part(Some(options), "/options", &["sweep", "solve"]);
+    faults.extend(reader.faults);
+    let (Some(bench), true) = (bench, faults.is_empty()) else {
+        return Err(faults);
+    };
+    let option = |key: &str| options.and_then(|options| options.get(key)).filter(|tree| !tree.is_null());
+    let answer = (question.ask)(&bench)?;
+    let swept = option("sweep").map(|given| sweep(&bench, question, given));
+    let solved = option("solve").map(|given| solve(&bench, question, given));
+    match (swept.transpose(), solved.transpose()) {
+        (Ok(sweep), Ok(solve)) => Ok(Asked { answer, sweep, solve }),
+        (swept, solved) => Err([swept.err(), solved.err()].into_iter().flatten().flatten().collect()),
+    }
+}
+
+fn find_question(name: &str) -> Result<&'static Question, Faults> {
+    QUESTIONS.iter().find(|question| question.name == name).ok_or_else(|| {
+        let names: Vec<String> = QUESTIONS.iter().map(|question| question.name.to_owned()).collect();
+        let sentence = format!("The question must be one of {}; “{name}” was given.", names.join(", "));
+        vec![Fault {
+            allowed: Some(Allowed::OneOf(names)),
+            ..Fault::new("/question", Code::Range, Tree::from(name), &sentence)
+        }]
+    })
+}
+
+/// Reads a bench in which numbers are the texts that a person typed.
+pub fn understand(typed: &Tree, decimal_mark: &str) -> typed::Understanding {
+    match mark(decimal_mark) {
+        Ok(mark) => typed::understand(typed, mark),
+        Err(faults) => typed::Understanding { faults, ..typed::understand(typed, DecimalMark::Auto) },
+    }
+}
+
+fn mark(word: &str) -> Result<DecimalMark, Faults> {
+    let mut reader = Reader::strict();
+    let mark = reader.word(Some(&Tree::from(word)), "/decimal_mark", DecimalMark::WORDS);
+    mark.ok_or(reader.faults)
+}
+
+/// Reads a certificate from pasted cells or a file's text.
+pub fn read_certificate(text: &str, choices: &Tree) -> Result<CertificateTable, Faults> {
+    record::read_certificate(text, &Choices::from_tree(choices, "/choices")?)
+}
+
+/// Reads a table of responsivities from pasted cells or a file's text.
+pub fn read_responsivity(text: &str, choices: &Tree) -> Result<ResponsivityTable, Faults> {
+    record::read_responsivity(text, &Choices::from_tree(choices, "/choices")?)
+}
+
+/// Reads the text of a bench file.
+pub fn read_bench(text: &str) -> Result<Bench, Faults> {
+    let tree = Tree::from_json(text.trim_start_matches('\u{feff}')).map_err(|why| {
+        let sentence = format!("This is not the text of a bench file: {why}.");
+        vec![Fault::new("", Code::Unreadable, Tree::Null, &sentence)]
+    })?;
+    if tree.get("schema").is_none() {
+        let sentence = "A bench file names its format under “schema”; this text does not.";
+        return Err(vec![Fault::missing("/schema", sentence)]);
+    }
+    Bench::from_tree(&tree)
+}
+
+/// The text for a field that holds a value: with its unit, and exact when read back.
+pub fn write_number(pointer: &str, value: f64, decimal_mark: &str) -> String {
+    let text = field(pointer).map_or_else(|| write::plain(value), |field| write::exact(value, field.kind));
+    match decimal_mark {
+        "comma" => text.replace('.', ","),
+        _ => text,
+    }
+}
+
+/// The text for the table at a pointer of a bench, tab-separated, exact when read back.
+pub fn write_table(pointer: &str, bench: &Tree, decimal_mark: &str) -> Result<String, Faults> {
+    let bench = Bench::from_tree(bench)?;
+    Ok(typed::write_table(pointer, &bench, mark(decimal_mark)?))
+}
+
+/// The demonstration bench: the invented observatory Ansa Ridge.
+pub fn demo() -> Tree {
+    // The file is part of the program, and a test reads it through the strict door.
+    Tree::from_json(include_str!("bench/demo.json")).unwrap_or_default()
+}
+
+/// The version of this program.
+pub fn version() -> &'static str {
+    env!("CARGO_PKG_VERSION")
+}

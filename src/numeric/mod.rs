@@ -1,0 +1,5 @@
+//! Mathematics that makes sense without units.
+
+pub mod minimum;
+pub mod pchip;
+pub mod root;

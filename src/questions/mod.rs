@@ -1,0 +1,69 @@
+//! What someone came to find out: one question a file, each a pure function of the bench.
+
+pub mod curve;
+pub mod needs;
+pub mod reading;
+pub mod sensitivity;
+pub mod shown;
+pub mod spectral;
+
+use crate::bench::Bench;
+use crate::fault::Faults;
+use curve::Curve;
+use serde::Serialize;
+
+/// Named numbers of an answer; a number that does not exist for this bench is absent.
+pub type Numbers = Vec<(&'static str, Option<f64>)>;
+
+/// A question that can be asked of a bench.
+#[derive(Debug, Clone, Copy)]
+pub struct Question {
+    /// Its name for scripts.
+    pub name: &'static str,
+    /// The question in plain words.
+    pub asks: &'static str,
+    /// The parts and numbers of the bench that it reads, by pointer; a part stands for all of its fields.
+    pub fields: &'static [&'static str],
+    /// The whole answer.
+    pub ask: fn(&Bench) -> Result<Answer, Faults>,
+    /// Only its numbers, for sweeps and searches.
+    pub numbers: fn(&Bench) -> Result<Numbers, Faults>,
+}
+
+/// All questions.
+pub const QUESTIONS: &[Question] = &[
+    Question {
+        name: "sensitivity",
+        asks: "How little light is enough?",
+        fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
+        ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
+        numbers: sensitivity::numbers,
+    },
+    Question {
+        name: "reading",
+        asks: "What is this reading worth?",
+        fields: &["/source/wavelength_nm", "/source/linewidth_nm", "/meter", "/detector/responsivity"],
+        ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
+        numbers: reading::numbers,
+    },
+];
+
+/// An answer to any question.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+#[serde(untagged)]
+pub enum Answer {
+    /// How little light is enough.
+    Sensitivity(Box<sensitivity::Answer>),
+    /// What a reading is worth.
+    Reading(Box<reading::Answer>),
+}
+
+impl Answer {
+    /// Its curves.
+    pub fn curves(&self) -> &[Curve] {
+        match self {
+            Answer::Sensitivity(answer) => &answer.curves,
+            Answer::Reading(answer) => &answer.curves,
+        }
+    }
+}

@@ -1,0 +1,28 @@
+//! Tables in and out: a certificate or a responsivity curve as a file, a drop, or cells pasted from a
+//! spreadsheet.
+//!
+//! The same few steps for both kinds, one file each: the text is cut into rows (`rows`), the header and the
+//! columns are recognised (`layout`, `words`), the decimal mark is decided from the whole table (`mark`), and
+//! each cell is read (`cell`). Everything that was decided is said in [`Reading`] and can be overruled by
+//! [`Choices`]; nothing is decided by how plausible a value looks.
+
+mod cell;
+mod certificate;
+mod choices;
+mod columns;
+mod layout;
+mod mark;
+mod names;
+mod reading;
+mod responsivity;
+mod rows;
+mod table;
+mod words;
+mod write;
+
+pub use certificate::{CertificateTable, read_certificate};
+pub use choices::{Choices, ColumnChoice};
+pub use names::{DecimalMark, Delimiter, Role, Unit};
+pub use reading::{BadRow, Column, Reading};
+pub use responsivity::{ResponsivityTable, read_responsivity};
+pub use write::{write_certificate_points, write_responsivity_points};

@@ -1,0 +1,3 @@
+//! Statements about chance.
+
+pub mod normal;

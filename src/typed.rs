@@ -1,0 +1,163 @@
+//! A bench as it was typed: texts for numbers, pasted cells for tables.
+
+use crate::bench::Bench;
+use crate::bench::detector::Responsivity;
+use crate::bench::reader::Reader;
+use crate::fault::{Fault, Faults};
+use crate::quantity::number::DecimalMark;
+use crate::record::{
+    self, Choices, Reading, read_certificate, read_responsivity, write_certificate_points,
+    write_responsivity_points,
+};
+use crate::tree::Tree;
+use serde::Serialize;
+use std::collections::BTreeMap;
+
+/// What was made of a typed bench.
+#[derive(Debug, Serialize)]
+pub struct Understanding {
+    /// The bench; what could not be read is absent from it.
+    pub bench: Bench,
+    /// How each typed number was read, by pointer.
+    pub understood: BTreeMap<String, String>,
+    /// How each table of pasted cells was read, by pointer.
+    pub tables: BTreeMap<String, Reading>,
+    /// Everything that is wrong.
+    pub faults: Faults,
+}
+
+/// Reads a typed bench.
+pub fn understand(typed: &Tree, mark: DecimalMark) -> Understanding {
+    let mut typed = typed.clone();
+    let mut tables = BTreeMap::new();
+    let mut faults = Faults::new();
+    for place in PLACES {
+        let Some(part) = at_mut(&mut typed, place.pointer) else { continue };
+        let Some(table) = part.get("table").cloned() else { continue };
+        match read_table(&table, place) {
+            Ok(Some(pasted)) => {
+                put(pasted.entries, place.only_points, part);
+                tables.insert(place.pointer.to_owned(), pasted.reading);
+            }
+            Ok(None) => *part = Tree::Null,
+            Err(found) => {
+                *part = Tree::Null;
+                faults.extend(found);
+            }
+        }
+    }
+    let mut reader = Reader::typed(mark);
+    let bench = Bench::read(&typed, &mut reader);
+    faults.extend(reader.faults);
+    Understanding { bench, understood: reader.understood.into_iter().collect(), tables, faults }
+}
+
+/// A table that was read: what the bench keeps of it, and how its text was read.
+struct Pasted {
+    /// Named values; the points are among them.
+    entries: Vec<(&'static str, Tree)>,
+    reading: Reading,
+}
+
+/// Where a table may be given as text.
+struct Place {
+    pointer: &'static str,
+    read: fn(&str, &Choices) -> Result<Pasted, Faults>,
+    /// Whether the bench keeps the bare list of points there, with nothing beside it.
+    only_points: bool,
+}
+
+const PLACES: &[Place] = &[
+    Place { pointer: "/detector/responsivity", read: responsivity, only_points: false },
+    Place { pointer: "/meter/typical_curve", read: responsivity, only_points: true },
+    Place { pointer: "/meter/certificate", read: certificate, only_points: false },
+];
+
+fn responsivity(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
+    let table = read_responsivity(text, choices)?;
+    let points = table.points.iter();
+    let rows = points.map(|point| row(&[("wavelength_nm", point.wavelength_nm), ("a_per_w", point.a_per_w)]));
+    Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
+}
+
+fn certificate(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
+    let table = read_certificate(text, choices)?;
+    let rows = table.points.iter().map(|point| {
+        let mut cells = vec![("wavelength_nm", point.wavelength_nm), ("value", point.value)];
+        cells.extend(point.expanded_percent.map(|percent| ("expanded_percent", percent)));
+        row(&cells)
+    });
+    let points = Tree::List(rows.collect());
+    let mut entries = vec![("form", Tree::from(table.form.word())), ("points", points)];
+    entries.extend(table.coverage_factor.map(|k| ("coverage_factor", Tree::Number(k))));
+    Ok(Pasted { entries, reading: table.reading })
+}
+
+fn row(cells: &[(&str, f64)]) -> Tree {
+    Tree::Map(cells.iter().map(|(key, value)| ((*key).to_owned(), Tree::Number(*value))).collect())
+}
+
+/// Reads `{ text, choices }`; nothing where the text is blank.
+fn read_table(table: &Tree, place: &Place) -> Result<Option<Pasted>, Faults> {
+    let text = match table.get("text") {
+        Some(Tree::Text(text)) if !text.trim().is_empty() => text,
+        _ => return Ok(None),
+    };
+    let at_choices = format!("{}/table/choices", place.pointer);
+    let choices = Choices::from_tree(table.get("choices").unwrap_or(&Tree::Null), &at_choices)?;
+    // The text stands for the points: their field owns whatever is wrong in it.
+    let owned =
+        |fault: Fault| Fault { pointer: format!("{}/points{}", place.pointer, fault.pointer), ..fault };
+    (place.read)(text, &choices).map(Some).map_err(|faults| faults.into_iter().map(owned).collect())
+}
+
+/// Puts what was read in the place of the text. What a person typed beside the text, such as k, goes before what
+/// the text says.
+fn put(pasted: Vec<(&'static str, Tree)>, only_points: bool, into: &mut Tree) {
+    if only_points {
+        *into = pasted.into_iter().next().map_or(Tree::Null, |(_, points)| points);
+        return;
+    }
+    let Tree::Map(entries) = into else { return };
+    entries.retain(|(key, _)| key != "table");
+    for (key, value) in pasted {
+        let blank = |tree: &Tree| match tree {
+            Tree::Text(text) => text.trim().is_empty(),
+            other => other.is_null(),
+        };
+        match entries.iter_mut().find(|(known, _)| known == key) {
+            Some((_, typed)) if !blank(typed) => {}
+            Some((_, typed)) => *typed = value,
+            None => entries.push((key.to_owned(), value)),
+        }
+    }
+}
+
+/// The table at a pointer of a bench as text; blank where the bench has none.
+pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
+    let mark = match mark {
+        DecimalMark::Comma => record::DecimalMark::Comma,
+        _ => record::DecimalMark::Point,
+    };
+    let meter = bench.meter.as_ref();
+    let detector = bench.detector.as_ref().and_then(|detector| detector.responsivity.as_ref());
+    match (pointer, detector) {
+        ("/detector/responsivity", Some(Responsivity::Table { points })) => {
+            write_responsivity_points(points, mark)
+        }
+        ("/meter/typical_curve", _) => meter
+            .and_then(|meter| meter.typical_curve.as_ref())
+            .map_or_else(String::new, |points| write_responsivity_points(points, mark)),
+        ("/meter/certificate", _) => {
+            meter.and_then(|meter| meter.certificate.as_ref()).map_or_else(String::new, |certificate| {
+                let k = certificate.coverage_factor;
+                write_certificate_points(certificate.form, k, &certificate.points, mark)
+            })
+        }
+        _ => String::new(),
+    }
+}
+
+fn at_mut<'t>(tree: &'t mut Tree, pointer: &str) -> Option<&'t mut Tree> {
+    pointer.split('/').skip(1).try_fold(tree, |tree, key| tree.get_mut(key))
+}

@@ -1,0 +1,12 @@
+//! What the cases in `tests/published/` may ask for, by name.
+
+mod light;
+mod mathematics;
+mod receiver;
+
+use crate::support::cases::Computation;
+
+/// Everything that a case may ask for.
+pub fn all() -> Vec<(&'static str, Computation)> {
+    [light::ALL, mathematics::ALL, receiver::ALL].concat()
+}

@@ -1,0 +1,105 @@
+/** The core: taken out of the page, started, and started afresh should it ever trap. */
+
+/** @typedef {import("./door.js").Door} Door */
+
+/** @typedef {Door & { initSync(source: { module: BufferSource | WebAssembly.Module }): unknown }} Glue */
+
+/** @returns {Glue} what the binding script left as a global */
+const glue = () => /** @type {any} */ (globalThis).wasm_bindgen ?? bareGlue();
+
+/** @returns {Glue} A top-level `let` is no property of the global object. */
+function bareGlue() {
+  // @ts-ignore: declared by the binding script that stands before this one
+  return wasm_bindgen;
+}
+
+/** @type {WebAssembly.Module | null} */
+let compiled = null;
+
+/** Decodes and starts the core that the page carries. */
+export function start() {
+  const text = document.getElementById("core")?.textContent ?? "";
+  compiled = new WebAssembly.Module(bytes(text.trim()));
+  glue().initSync({ module: compiled });
+}
+
+/** @param {string} base64 @returns {Uint8Array<ArrayBuffer>} */
+function bytes(base64) {
+  const native = /** @type {any} */ (Uint8Array).fromBase64;
+  if (native) return native.call(Uint8Array, base64);
+  const binary = atob(base64);
+  const out = new Uint8Array(binary.length);
+  for (let i = 0; i < binary.length; i += 1) out[i] = binary.charCodeAt(i);
+  return out;
+}
+
+/**
+ * Starts a fresh core from the compiled module. The binding script keeps one instance for good, so its own text is
+ * run once more; the content security policy knows that text.
+ *
+ * @returns {boolean} whether a fresh core runs
+ */
+function restart() {
+  const before = glue();
+  const script = document.createElement("script");
+  script.textContent = document.getElementById("glue")?.textContent ?? "";
+  document.head.append(script);
+  script.remove();
+  if (glue() === before || !compiled) return false;
+  glue().initSync({ module: compiled });
+  return true;
+}
+
+/** @type {(message: string, fresh: boolean) => void} */
+let report = () => {};
+
+/** @param {(message: string, fresh: boolean) => void} listener called when the core has trapped */
+export function onTrap(listener) {
+  report = listener;
+}
+
+/**
+ * Calls the core. A trap is a mistake of ours: it is reported, and nothing typed is lost.
+ *
+ * @template T
+ * @param {(door: Door) => T} use
+ * @param {T} otherwise
+ * @returns {T}
+ */
+function guarded(use, otherwise) {
+  try {
+    return use(glue());
+  } catch (error) {
+    report(String(error instanceof Error ? error.message : error), restart());
+    return otherwise;
+  }
+}
+
+/** The door as the page uses it: plain values out, no exception. @type {Door} */
+export const core = {
+  questions: () => guarded((door) => door.questions(), []),
+  fields: () => guarded((door) => door.fields(), []),
+  version: () => guarded((door) => door.version(), ""),
+  demo: () => guarded((door) => door.demo(), {}),
+  ask: (question, bench, options) => plain(guarded((door) => door.ask(question, bench, options), { faults: [] })),
+  understand: (typed, mark) =>
+    plain(guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: [] })),
+  read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: [] }),
+  read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: [] }),
+  read_bench: (text) => guarded((door) => door.read_bench(text), { faults: [] }),
+  write_number: (pointer, value, mark) => guarded((door) => door.write_number(pointer, value, mark), String(value)),
+};
+
+/**
+ * Curves may arrive as typed arrays, which JSON would turn into objects in the notebook.
+ *
+ * @template T
+ * @param {T} value
+ * @returns {T}
+ */
+export function plain(value) {
+  if (ArrayBuffer.isView(value)) return /** @type {any} */ (Array.from(/** @type {any} */ (value)));
+  if (Array.isArray(value)) return /** @type {any} */ (value.map(plain));
+  if (value === null || typeof value !== "object") return value;
+  return /** @type {any} */ (Object.fromEntries(Object.entries(value).map(([key, inner]) => [key, plain(inner)])));
+}
