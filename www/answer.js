@@ -23,8 +23,9 @@ export function answerView(answer, mark, keep) {
   const { shown } = answer;
   const parts = [
     headline(shown, mark, keep),
-    warnings(shown, mark),
+    doubts(shown, mark),
     facts(shown, mark),
+    cautions(shown, mark),
     shown.budgets.length > 0 && h("div", { class: "budgets" }, shown.budgets.map((budget) => budgetView(budget, mark))),
     ...(answer.curves ?? []).map((curve) => chartFigure(curve, mark)),
     ...shown.tables.map((table) => tableView(table, mark)),
@@ -40,6 +41,7 @@ function headline(shown, mark, keep) {
     "div",
     { class: "headline" },
     h("p", { class: "headline-text" }, h("span", { class: "headline-figure" }, figure), " ", marked(shown.headline.sentence, mark)),
+    shown.cautions.length > 0 && h("p", { class: "caution cautions-named" }, "Before you touch anything: ", h("a", { href: "#cautions", click: toCautions }, shown.cautions.map(({ about }) => about.toLowerCase()).join(", "))),
     h(
       "div",
       { class: "actions" },
@@ -48,6 +50,14 @@ function headline(shown, mark, keep) {
       h("button", { type: "button", click: () => copy(answerText(shown, mark), "the answer") }, "Copy answer"),
     ),
   );
+}
+
+/** The address keeps the question. @param {MouseEvent} event */
+function toCautions(event) {
+  event.preventDefault();
+  const cautions = document.getElementById("cautions");
+  cautions?.scrollIntoView({ block: "nearest" });
+  cautions?.focus({ preventScroll: true });
 }
 
 /** @param {string} figure @param {string} si @param {string} [label] */
@@ -64,14 +74,16 @@ function copyButton(figure, si, label) {
 }
 
 /** @param {Shown} shown @param {Mark} mark */
-function warnings({ cautions, doubts }, mark) {
-  if (cautions.length + doubts.length === 0) return null;
-  return h(
-    "div",
-    { class: "warnings" },
-    doubts.map((sentence) => h("p", { class: "doubt" }, h("b", {}, "In doubt. "), marked(sentence, mark))),
-    cautions.map(({ about, sentence }) => h("p", { class: "caution" }, h("b", {}, `${capital(about)}. `), marked(sentence, mark))),
-  );
+function doubts({ doubts: list }, mark) {
+  if (list.length === 0) return null;
+  return h("div", { class: "doubts" }, list.map((sentence) => h("p", { class: "doubt" }, h("b", {}, "In doubt. "), marked(sentence, mark))));
+}
+
+/** @param {Shown} shown @param {Mark} mark */
+function cautions({ cautions: list }, mark) {
+  if (list.length === 0) return null;
+  const sentences = list.map(({ about, sentence }) => h("p", { class: "caution" }, h("b", {}, `${capital(about)}. `), marked(sentence, mark)));
+  return h("section", { class: "cautions", id: "cautions", "aria-label": "Cautions", tabindex: -1 }, sentences);
 }
 
 /** @param {string} text */

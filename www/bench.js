@@ -87,7 +87,7 @@ export function valueAt(bench, pointer) {
  *
  * @param {Control[]} controls
  * @param {Bench} bench
- * @param {{ number(pointer: string, value: number): string, table(pointer: string, points: any[]): string }} write
+ * @param {{ number(pointer: string, value: number): string, table(pointer: string): string }} write a table by the pointer of what it stands for
  * @param {Texts} otherwise for choices that the bench leaves open
  * @returns {Texts}
  */
@@ -97,8 +97,8 @@ export function textsOf(controls, bench, write, otherwise) {
   for (const { name, kind } of controls) {
     const value = valueAt(bench, name);
     if (name === DETECTOR_TYPE) texts[name] = bench.detector?.avalanche ? "avalanche" : "pin";
+    else if (kind === "table") texts[name] = write.table(name.replace(/\/points$/, ""));
     else if (value === null) texts[name] = kind === "choice" ? (otherwise[name] ?? "") : "";
-    else if (kind === "table") texts[name] = write.table(name, value);
     else if (typeof value === "number") texts[name] = write.number(name, value);
     else if (Array.isArray(value)) texts[name] = value.map((one) => write.number(name, one)).join("; ");
     else texts[name] = String(value);

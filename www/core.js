@@ -81,25 +81,11 @@ export const core = {
   fields: () => guarded((door) => door.fields(), []),
   version: () => guarded((door) => door.version(), ""),
   demo: () => guarded((door) => door.demo(), {}),
-  ask: (question, bench, options) => plain(guarded((door) => door.ask(question, bench, options), { faults: [] })),
-  understand: (typed, mark) =>
-    plain(guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: [] })),
+  ask: (question, bench, options) => guarded((door) => door.ask(question, bench, options), { faults: [] }),
+  understand: (typed, mark) => guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: [] }),
   read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: [] }),
   read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: [] }),
   read_bench: (text) => guarded((door) => door.read_bench(text), { faults: [] }),
   write_number: (pointer, value, mark) => guarded((door) => door.write_number(pointer, value, mark), String(value)),
+  write_table: (pointer, bench, mark) => guarded((door) => door.write_table(pointer, bench, mark), { faults: [] }),
 };
-
-/**
- * Curves may arrive as typed arrays, which JSON would turn into objects in the notebook.
- *
- * @template T
- * @param {T} value
- * @returns {T}
- */
-export function plain(value) {
-  if (ArrayBuffer.isView(value)) return /** @type {any} */ (Array.from(/** @type {any} */ (value)));
-  if (Array.isArray(value)) return /** @type {any} */ (value.map(plain));
-  if (value === null || typeof value !== "object") return value;
-  return /** @type {any} */ (Object.fromEntries(Object.entries(value).map(([key, inner]) => [key, plain(inner)])));
-}

@@ -23,11 +23,11 @@
  *
  * @typedef {{ index: number, header: string | null, role: string, unit: string | null }} Column
  * @typedef {{
- *   delimiter: string, decimal_mark: string, skipped_lines: number | unknown[], header_line: number | null, columns: Column[],
+ *   delimiter: string, decimal_mark: string, skipped_lines: number, header_line: number | null, columns: Column[],
  *   rows_read: number, bad_rows: { line: number, text: string, sentence: string }[], cleaned: string[]
  * }} Reading
  * @typedef {{ form?: string, coverage_factor?: number | null, points: Record<string, number | null>[], reading: Reading }} ReadTable
- * @typedef {{ bench: Bench, understood: Record<string, string>, tables: Record<string, ReadTable>, faults: Fault[] }} Understood
+ * @typedef {{ bench: Bench, understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[] }} Understood
  *
  * @typedef {Record<string, any>} Bench
  *
@@ -39,6 +39,7 @@
  *   read_responsivity(text: string, choices?: unknown): { value?: ReadTable, faults?: Fault[] },
  *   read_bench(text: string): { value?: Bench, faults?: Fault[] },
  *   write_number(pointer: string, value: number, mark: Mark): string,
+ *   write_table(pointer: string, bench: Bench, mark: Mark): { value?: string, faults?: Fault[] },
  * }} Door
  */
 export {};

@@ -1,7 +1,7 @@
 /** The bench's controls in the document: which there are, their hints, what was understood, and their faults. */
 
 import { byId, h, setText } from "./dom.js";
-import { takesPart } from "./bench.js";
+import { DETECTOR_TYPE, takesPart } from "./bench.js";
 
 /**
  * @typedef {import("./bench.js").Control} Control
@@ -59,6 +59,8 @@ export function addNotes(fields) {
     const field = fields.find(({ pointer }) => pointer === input.name);
     const box = input.closest(".field, .table-input");
     if (!box) continue;
+    // A placeholder says the unit, as long as nothing is typed.
+    if (field && input instanceof HTMLInputElement) input.placeholder = field.unit;
     const hint = h("span", { class: "hint", id: `${input.id}-hint` }, field ? hintOf(field) : "");
     const understood = h("span", { class: "understood", id: `${input.id}-understood` });
     const fault = h("p", { class: "fault", id: `${input.id}-fault`, hidden: true });
@@ -103,7 +105,8 @@ export function showUse(pointers) {
 
 /** @param {string} name @param {string[]} pointers */
 function used(name, pointers) {
-  return !name.startsWith("/") || pointers.some((pointer) => under(name, pointer) || under(pointer, parent(name)));
+  const pointer = name === DETECTOR_TYPE ? "/detector/avalanche" : name;
+  return pointers.some((field) => under(pointer, field));
 }
 
 /** @param {string} pointer */
@@ -192,6 +195,7 @@ export function showFaults(faults, all, texts) {
 
 /** @param {Input} input @param {Fault[] | undefined} faults */
 function describe(input, faults) {
+  if (!document.getElementById(`${input.id}-hint`)) return;
   const notes = `${input.id}-hint ${input.id}-understood`;
   if (faults) {
     input.setAttribute("aria-invalid", "true");

@@ -200,11 +200,11 @@ fn is_blank(tree: &Tree) -> bool {
 
 /// How a typed number was understood: in the unit of the bench, with what was typed where that differs.
 fn understood(number: &Understood, kind: &Kind) -> String {
+    let (typed, same) = (number.typed_value, number.unit == kind.unit || number.unit.is_empty());
     let kept = match kind.unit {
-        "dBm" => format!("{} dBm", write::fixed(number.value, 3)),
+        "dBm" if !same => format!("{} dBm", write::fixed(number.value, 3)),
         _ => write::exact(rounded(number.value), kind),
     };
-    let (typed, same) = (number.typed_value, number.unit == kind.unit || number.unit.is_empty());
     match number.unit {
         _ if same => kept,
         "W" => format!("{} = {kept}", write::prefixed(typed, "W", 4)),

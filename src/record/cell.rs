@@ -5,7 +5,7 @@ use std::borrow::Cow;
 
 /// The greatest number that is a number: instruments answer ±9.9E37 for "over range" and 9.91E37 for "no
 /// reading" (SCPI-1999).
-pub(super) const NO_READING: f64 = 9.89e37;
+const NO_READING: f64 = 9.89e37;
 
 /// A cell cut into the number's own text and its unit.
 pub(super) struct Cell<'a> {
@@ -85,6 +85,12 @@ impl<'a> Cell<'a> {
             (true, true) if has('.') => Marks::EitherPoint,
             _ => Marks::Silent,
         }
+    }
+
+    /// Whether it stands for "no reading", which instruments write with a point whatever the table's mark is.
+    pub(super) fn is_no_reading(&self) -> bool {
+        let is_great = |mark| number(&self.number, mark, 0).is_some_and(|value| value.abs() >= NO_READING);
+        is_great(DecimalMark::Point) || is_great(DecimalMark::Comma)
     }
 
     /// Whether a mark of thousands is in it, once the decimal mark is known.

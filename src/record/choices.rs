@@ -79,7 +79,7 @@ fn columns(tree: &Tree, pointer: &str, faults: &mut Faults) -> Vec<ColumnChoice>
         let role = word(item, &here, "role", Role::NAMES, faults);
         let unit = unit(item, &here, faults);
         let Some(index) = index else {
-            if item.get("index").is_none_or(Tree::is_null) {
+            if matches!(item, Tree::Map(_)) && item.get("index").is_none_or(Tree::is_null) {
                 let sentence = "A chosen column needs its index, counted from 0.";
                 faults.push(Fault::missing(&format!("{here}/index"), sentence));
             }

@@ -2,7 +2,7 @@
 
 use super::names::{Delimiter, Unit};
 use super::rows::Row;
-use super::words::{Heading, heading};
+use super::words::{Heading, heading, is_foreign};
 
 /// The parts of a table, as places in its list of rows.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -64,11 +64,14 @@ fn names_columns(row: &Row) -> bool {
     row.numbers() == 0 && roles.contains(&Wavelength) && roles.iter().any(|role| *role != Wavelength)
 }
 
-/// Whether a row holds nothing but units.
+/// Whether a row holds nothing but units, and two of them ours.
 fn is_units(row: &Row) -> bool {
-    let bare = |cell: &str| Unit::written(cell.trim_matches(['(', ')', '[', ']']));
-    let units: Vec<_> = row.cells().filter(|cell| !cell.is_empty()).map(bare).collect();
-    units.len() >= 2 && units.iter().all(Option::is_some) && units.iter().flatten().any(|u| *u != Unit::One)
+    let bare = |cell: &str| cell.trim_matches(['(', ')', '[', ']']).to_owned();
+    let cells: Vec<String> = row.cells().filter(|cell| !cell.is_empty()).map(bare).collect();
+    let ours: Vec<Unit> = cells.iter().filter_map(|cell| Unit::written(cell)).collect();
+    ours.len() >= 2
+        && ours.iter().any(|unit| *unit != Unit::One)
+        && cells.iter().all(|cell| Unit::written(cell).is_some() || is_foreign(cell))
 }
 
 /// What the header says of each of `width` columns.

@@ -1,6 +1,7 @@
 //! A detector's responsivity over wavelength.
 
 use super::choices::Choices;
+use super::points::Point;
 use super::reading::Reading;
 use super::table;
 use crate::bench::meter::CertificateForm;
@@ -32,6 +33,6 @@ pub struct ResponsivityTable {
 pub fn read_responsivity(text: &str, choices: &Choices) -> Result<ResponsivityTable, Faults> {
     let table = table::read(text, choices, &[CertificateForm::Responsivity])?;
     let point =
-        |point: &table::Point| ResponsivityPoint { wavelength_nm: point.wavelength_nm, a_per_w: point.value };
+        |point: &Point| ResponsivityPoint { wavelength_nm: point.wavelength_nm, a_per_w: point.value };
     Ok(ResponsivityTable { points: table.points.iter().map(point).collect(), reading: table.reading })
 }

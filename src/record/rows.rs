@@ -90,6 +90,16 @@ pub(super) fn sniffed_delimiter(text: &str) -> Delimiter {
             best = (delimiter, found);
         }
     }
+    if best.1.0 == 0 {
+        // No row of two numbers: the one that is there at all, for the sentence about what is wrong.
+        let parts =
+            |delimiter: &&Delimiter| delimiter.byte().is_some_and(|byte| sample.bytes().any(|b| b == byte));
+        return [Delimiter::Tab, Delimiter::Semicolon, Delimiter::Comma]
+            .iter()
+            .find(parts)
+            .copied()
+            .unwrap_or(Delimiter::Space);
+    }
     best.0
 }
 

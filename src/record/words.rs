@@ -150,7 +150,8 @@ fn parted(text: &str) -> (String, Option<Unit>, Option<String>) {
     (name.trim().trim_end_matches(['/', ',', ':']).trim().to_owned(), unit, foreign)
 }
 
-fn is_foreign(text: &str) -> bool {
+/// Whether a text is a unit that no column here can be in.
+pub(super) fn is_foreign(text: &str) -> bool {
     let text = text.trim();
     FOREIGN.contains(&text) || (text.ends_with("/W") && text.len() <= 6)
 }

@@ -16,6 +16,7 @@ import { bestPlace, textWidth } from "./labels.js";
  */
 
 const SIZE = 12;
+/** As the style sheet keeps free for it. */
 const HEIGHT = 280;
 const KEY_LINE = 18;
 

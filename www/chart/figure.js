@@ -18,6 +18,9 @@ import { dataOf, svgText, tsv } from "./export.js";
 /** Where the cursor of each chart stood, so that it stays while a field is being changed. @type {Map<string, Position>} */
 const positions = new Map();
 
+/** The charts whose numbers are unfolded, for the same reason. @type {Set<string>} */
+const unfolded = new Set();
+
 /** @param {Curve} curve @param {Mark} mark @returns {HTMLElement} */
 export function chartFigure(curve, mark) {
   const paper = h("div", { class: "paper" });
@@ -94,8 +97,10 @@ function listen(curve, drawing, readout, mark) {
 /** The numbers, made when they are first looked at. @param {Curve} curve @param {Mark} mark */
 function dataView(curve, mark) {
   const box = h("div", { class: "scroll data", tabindex: 0, role: "region", "aria-label": `Data: ${curve.title}` });
-  const details = h("details", {}, h("summary", {}, "Data"), box);
+  const details = h("details", { open: unfolded.has(curve.name) }, h("summary", {}, "Data"), box);
   details.addEventListener("toggle", () => {
+    if (details.open) unfolded.add(curve.name);
+    else unfolded.delete(curve.name);
     if (!details.open || box.firstChild) return;
     const { columns, rows, long } = dataOf(curve);
     const cell = (/** @type {string | number} */ value) => h("td", {}, typeof value === "number" ? readOff(value, 6, mark) : value);

@@ -29,7 +29,7 @@ fn error_ratio_against_power(setup: &Setup, answer: &Answer) -> Curve {
     let (low, high) = power_range_dbm(setup, &link, answer);
     let line = |name: &str, link: &Link| {
         let points = evenly(low, high, POINTS).map(|dbm| (dbm, link.error_ratio(watt_from_dbm(dbm))));
-        let (x, y) = points.filter(|(_, ratio)| *ratio >= LOWEST_RATIO * 1e-3).unzip();
+        let (x, y) = points.filter(|(_, ratio)| *ratio >= 0.999 * LOWEST_RATIO).unzip();
         Line { name: name.to_owned(), x, y }
     };
     let own = match link.threshold {
@@ -48,8 +48,8 @@ fn error_ratio_against_power(setup: &Setup, answer: &Answer) -> Curve {
     if let (Some(x), Some(y)) = (answer.received_power_dbm, answer.error_ratio)
         && (low..=high).contains(&x)
     {
-        let y = y.max(LOWEST_RATIO);
-        marks.push(Mark::Point { name: "this source".to_owned(), x, y });
+        let name = if y < LOWEST_RATIO { "this source: below 10⁻¹⁸" } else { "this source" };
+        marks.push(Mark::Point { name: name.to_owned(), x, y: y.max(LOWEST_RATIO) });
     }
     Curve {
         name: "error_ratio_against_power",

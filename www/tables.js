@@ -1,0 +1,143 @@
+/** Beneath each box for pasted cells: how its text was read, and the means to have it read otherwise. */
+
+import { h } from "./dom.js";
+import { choicesOf, parsedChoices } from "./bench.js";
+
+/**
+ * @typedef {import("./bench.js").Texts} Texts
+ * @typedef {import("./door.js").Reading} Reading
+ * @typedef {import("./door.js").Column} Column
+ * @typedef {(name: string, choices: Record<string, unknown> | null) => void} Change
+ */
+
+const DELIMITERS = { tab: "tabs", semicolon: "semicolons", comma: "commas", space: "spaces" };
+const MARKS = { point: "point (1.5)", comma: "comma (1,5)" };
+/** What a column may hold, and the units that go with it. @type {Record<string, { says: string, units: string[] }>} */
+const ROLES = {
+  wavelength: { says: "wavelength", units: ["nm", "µm"] },
+  responsivity: { says: "responsivity", units: ["A/W", "mA/W"] },
+  correction_factor: { says: "correction factor, true over shown", units: ["1", "%", "dB"] },
+  deviation: { says: "deviation of the reading", units: ["%", "dB"] },
+  expanded: { says: "expanded uncertainty", units: ["%", "dB", "A/W", "mA/W", "1"] },
+  ignored: { says: "nothing that is read", units: [] },
+};
+
+/** Rows named one by one; of more, only how many. */
+const MOST_ROWS = 12;
+
+/** What each box shows, so that it is only drawn anew when that changes. @type {WeakMap<Element, string>} */
+const drawn = new WeakMap();
+
+/** The last way each table was read: what to show while its text cannot be read. @type {Map<string, Reading>} */
+const last = new Map();
+
+/** @param {Texts} texts @param {Record<string, Reading>} readings by the pointer of what the table stands for @param {Change} change */
+export function showTables(texts, readings, change) {
+  for (const box of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-table]"))) {
+    const name = box.dataset.table ?? "";
+    const place = /** @type {HTMLElement | null} */ (box.querySelector(".read-as"));
+    if (!place) continue;
+    const now = readings[name.replace(/\/points$/, "")];
+    if (now) last.set(name, now);
+    const reading = now ?? last.get(name);
+    const filled = (texts[name] ?? "").trim() !== "";
+    place.hidden = !filled || !reading;
+    if (!filled) last.delete(name);
+    if (!filled || !reading) continue;
+    const choices = parsedChoices(texts, name);
+    const key = JSON.stringify([reading, choices, !!now]);
+    if (drawn.get(place) === key) continue;
+    drawn.set(place, key);
+    redraw(place, view(reading, choices, !!now, box.dataset.reads ?? "", (to) => change(name, to)));
+  }
+}
+
+/** Draws anew and leaves the focus where it was. @param {HTMLElement} place @param {HTMLElement[]} content */
+function redraw(place, content) {
+  const focused = /** @type {HTMLElement | null} */ (document.activeElement);
+  const key = focused && place.contains(focused) ? focused.dataset.choice : undefined;
+  place.replaceChildren(...content);
+  if (key) /** @type {HTMLElement | null} */ (place.querySelector(`[data-choice="${key}"]`))?.focus();
+}
+
+/**
+ * @param {Reading} reading
+ * @param {Record<string, any> | null} choices
+ * @param {boolean} current whether the text was read this way just now
+ * @param {string} kind
+ * @param {(choices: Record<string, unknown> | null) => void} change
+ * @returns {HTMLElement[]}
+ */
+function view(reading, choices, current, kind, change) {
+  const set = (/** @type {Record<string, unknown>} */ more) => change({ ...choices, ...more });
+  const header = reading.header_line ? `header in line ${reading.header_line}` : "no header";
+  const skipped = Number(reading.skipped_lines);
+  const counts = [current ? `${reading.rows_read} rows` : "not read now", header, skipped > 0 && `${skipped} lines before the table skipped`];
+  return [
+    h("p", { class: "read-line" }, h("b", {}, "Read as: "), counts.filter(Boolean).join(", ")),
+    h(
+      "div",
+      { class: "read-choices" },
+      select("delimiter", "Cells parted by", DELIMITERS, reading.delimiter, (delimiter) => set({ delimiter })),
+      select("decimal_mark", "Decimal mark", MARKS, reading.decimal_mark, (decimal_mark) => set({ decimal_mark })),
+    ),
+    columns(reading, choices, kind, set),
+    ...sentences(reading),
+    ...(choices ? [h("button", { type: "button", class: "quiet", "data-choice": "forget", click: () => change(null) }, "Recognise it anew")] : []),
+  ];
+}
+
+/** @param {Reading} reading @param {Record<string, any> | null} choices @param {string} kind @param {(more: Record<string, unknown>) => void} set */
+function columns(reading, choices, kind, set) {
+  const roles = kind === "certificate" ? Object.keys(ROLES) : ["wavelength", "responsivity", "ignored"];
+  const names = Object.fromEntries(roles.map((role) => [role, ROLES[role]?.says ?? role]));
+  const choose = (/** @type {Column} */ column, /** @type {Partial<Column>} */ to) => {
+    const others = /** @type {Column[]} */ (choices?.columns ?? []).filter(({ index }) => index !== column.index);
+    const { index, role, unit } = { ...column, ...to };
+    const fits = ROLES[role]?.units.includes(unit ?? "");
+    set({ columns: [...others, { index, role, ...(fits ? { unit } : {}) }] });
+  };
+  const rows = reading.columns.map((column) => {
+    const name = `Column ${column.index + 1}`;
+    const units = ROLES[column.role]?.units ?? [];
+    return h(
+      "tr",
+      {},
+      h("th", { scope: "row" }, column.header || name),
+      h("td", {}, bare(`role-${column.index}`, `${name} holds`, names, column.role, (role) => choose(column, { role }))),
+      h("td", {}, units.length > 0 && bare(`unit-${column.index}`, `Unit of column ${column.index + 1}`, Object.fromEntries(units.map((unit) => [unit, unit])), column.unit ?? "", (unit) => choose(column, { unit }))),
+    );
+  });
+  const heads = ["Column", "holds", "in"].map((text) => h("th", { scope: "col" }, text));
+  return h("table", { class: "read-columns" }, h("thead", {}, h("tr", {}, heads)), h("tbody", {}, rows));
+}
+
+/** What was made of the text, and the rows that are no points. @param {Reading} reading */
+function sentences({ cleaned, bad_rows: bad }) {
+  const rows = bad.slice(0, MOST_ROWS).map(({ line, text, sentence }) => h("li", {}, `Line ${line}, “${text.slice(0, 60)}”: ${sentence}`));
+  const more = bad.length - rows.length;
+  return [
+    ...(cleaned.length > 0 ? [h("ul", { class: "cleaned" }, cleaned.map((sentence) => h("li", {}, sentence)))] : []),
+    ...(bad.length > 0
+      ? [h("p", { class: "read-line" }, `${bad.length} ${bad.length === 1 ? "row is" : "rows are"} left out:`), h("ul", { class: "bad-rows" }, rows, more > 0 && h("li", {}, `and ${more} more`))]
+      : []),
+  ];
+}
+
+/** @param {string} key @param {string} label @param {Record<string, string>} options @param {string} value @param {(value: string) => void} change */
+function select(key, label, options, value, change) {
+  return h("label", {}, h("span", {}, label), bare(key, null, options, value, change));
+}
+
+/** @param {string} key @param {string | null} label @param {Record<string, string>} options @param {string} value @param {(value: string) => void} change */
+function bare(key, label, options, value, change) {
+  const choose = (/** @type {Event} */ event) => change(/** @type {HTMLSelectElement} */ (event.target).value);
+  const items = Object.entries(options).map(([name, says]) => h("option", { value: name, selected: name === value }, says));
+  return h("select", { "data-choice": key, "aria-label": label, change: choose, autocomplete: "off" }, items);
+}
+
+/** The texts without a table's choices: they were made for another text. @param {Texts} texts @param {string} name @returns {Texts} */
+export function forgetting(texts, name) {
+  const { [choicesOf(name)]: _, ...others } = texts;
+  return others;
+}
