@@ -3,6 +3,8 @@
 //! All samples are invented. The expected numbers are the written ones; converted ones were computed by hand,
 //! or with Python's `decimal` at 30 digits where the source beside them says so.
 #![cfg(not(target_arch = "wasm32"))]
+// Digits of the other program, as it printed them.
+#![allow(clippy::excessive_precision)]
 
 use leastlight::bench::meter::{CertificateForm, CertificatePoint};
 use leastlight::bench::points::ResponsivityPoint;

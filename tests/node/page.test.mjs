@@ -1,0 +1,169 @@
+// The page's modules that touch no document: history, typed bench, notebook, figures, axes, labels.
+
+import assert from "node:assert/strict";
+import { describe, test } from "node:test";
+
+import { percent } from "../../www/answer.js";
+import { choicesOf, takesPart, textsOf, typed } from "../../www/bench.js";
+import { scaleOf } from "../../www/chart/axis.js";
+import { bestPlace, overlap } from "../../www/chart/labels.js";
+import { fileName } from "../../www/files.js";
+import { worthSaying } from "../../www/fields.js";
+import { closed, emptyHistory, recorded, redone, undone } from "../../www/history.js";
+import { SCHEMA, claims, compared, fileText, joined, read } from "../../www/notebook.js";
+import { marked, readOff, spreadsheet } from "../../www/numbers.js";
+
+const control = (name, kind = "number", when = [], groups = []) => ({ name, kind, when, groups });
+
+describe("a typed bench", () => {
+    const controls = [
+        control("/path/loss_db", "number", [], ["/path"]),
+        control("/detector/responsivity/kind", "choice", [], ["/detector"]),
+        control("/detector/responsivity/a_per_w", "number", [["/detector/responsivity/kind", "value"]], ["/detector"]),
+        control("/detector/responsivity/points", "table", [["/detector/responsivity/kind", "table"]], ["/detector"]),
+    ];
+
+    test("nests texts by their pointers and leaves them as typed", () => {
+        const bench = typed(controls, { "/path/loss_db": "3,5 dB", "/detector/responsivity/kind": "value", "/detector/responsivity/a_per_w": "0.9" });
+        assert.equal(bench.path.loss_db, "3,5 dB");
+        assert.deepEqual(bench.detector.responsivity, { kind: "value", a_per_w: "0.9" });
+    });
+
+    test("leaves out an alternative that is not chosen, but not its text", () => {
+        const texts = { "/detector/responsivity/kind": "table", "/detector/responsivity/a_per_w": "0.9", "/detector/responsivity/points": "1310\t0.9" };
+        assert.equal(takesPart(controls[2], texts), false);
+        assert.deepEqual(typed(controls, texts).detector.responsivity, { kind: "table", table: { text: "1310\t0.9" } });
+    });
+
+    test("has no part in which nothing is typed", () => {
+        assert.equal(typed(controls, { "/path/loss_db": " " }).path, null);
+    });
+
+    test("carries how a table is to be read", () => {
+        const name = "/detector/responsivity/points";
+        const texts = { "/detector/responsivity/kind": "table", [name]: "1;2", [choicesOf(name)]: '{"delimiter":"semicolon"}' };
+        assert.deepEqual(typed(controls, texts).detector.responsivity.table.choices, { delimiter: "semicolon" });
+    });
+
+    test("is filled from a bench and gives the bench back", () => {
+        const write = { number: (_, value) => String(value), table: () => "" };
+        const texts = textsOf(controls, { path: { loss_db: 3.5 }, detector: { responsivity: { kind: "value", a_per_w: 0.9 } } }, write, {});
+        assert.equal(texts["/path/loss_db"], "3.5");
+        assert.equal(typed(controls, texts).detector.responsivity.a_per_w, "0.9");
+    });
+});
+
+describe("undo", () => {
+    const name = (changes) => Object.keys(changes).join();
+
+    test("takes the keystrokes in one field as one step", () => {
+        let history = emptyHistory();
+        history = recorded(history, { a: "" }, { a: "1" }, name, "a");
+        history = recorded(history, { a: "1" }, { a: "12" }, name, "a");
+        assert.equal(history.past.length, 1);
+        assert.deepEqual(undone(history, { a: "12" }).texts, { a: "" });
+    });
+
+    test("begins a new step when the field was left", () => {
+        let history = closed(recorded(emptyHistory(), { a: "" }, { a: "1" }, name, "a"));
+        history = recorded(history, { a: "1" }, { a: "12" }, name, "a");
+        assert.equal(history.past.length, 2);
+    });
+
+    test("goes back and forth to the letter", () => {
+        const history = recorded(emptyHistory(), { a: "1", b: "2" }, { a: "1", b: "3" }, name, null);
+        const back = undone(history, { a: "1", b: "3" });
+        assert.deepEqual(back.texts, { a: "1", b: "2" });
+        assert.deepEqual(redone(back.history, back.texts).texts, { a: "1", b: "3" });
+        assert.equal(undone(emptyHistory(), {}), null);
+    });
+});
+
+describe("the notebook", () => {
+    const entry = (id, when, loss, figure) => ({
+        id, when, question: "sensitivity", asks: "?", title: "t", note: "", version: "1", texts: { "/path/loss_db": loss }, bench: {},
+        answer: { shown: { headline: { figure, sentence: "" }, facts: [{ name: "Gain", figure: "8" }] }, curves: [] },
+    });
+    const [a, b] = [entry("a", "2026-01-01", "1 dB", "−30 dBm"), entry("b", "2026-01-02", "2 dB", "−31 dBm")];
+
+    test("comes back from its own file", () => {
+        assert.ok(claims(fileText([a], "1")));
+        assert.deepEqual(read(fileText([a, b], "1")).kept, [a, b]);
+    });
+
+    test("says why a file is none", () => {
+        assert.match(read("{").sentence, /not the text of a notebook/);
+        assert.match(read('{"schema":"leastlight.notebook/9"}').sentence, /leastlight\.notebook\/9/);
+        assert.match(read(JSON.stringify({ schema: SCHEMA, kept: [a, { id: 1 }] })).sentence, /1 of the 2 answers/);
+        assert.equal(claims('{"schema":"leastlight.bench/1"}'), false);
+    });
+
+    test("takes the same answer once, newest first", () => {
+        assert.deepEqual(joined([a], [b, a]).map(({ id }) => id), ["b", "a"]);
+    });
+
+    test("lays two answers side by side, with the inputs that differ", () => {
+        const { facts, inputs } = compared(a, b);
+        assert.deepEqual(facts[0], ["Answer", "−30 dBm", "−31 dBm"]);
+        assert.deepEqual(inputs, [["/path/loss_db", "1 dB", "2 dB"]]);
+    });
+});
+
+describe("figures", () => {
+    test("change their decimal mark and nothing else", () => {
+        assert.equal(marked("−27.03 dBm (IEC 60825-1, ED-13.)", "comma"), "−27,03 dBm (IEC 60825-1, ED-13.)");
+        assert.equal(marked("1.5", "auto"), "1.5");
+        assert.equal(spreadsheet(1.5, "comma"), "1,5");
+    });
+
+    test("are read off a chart with their sign and exponent", () => {
+        assert.equal(readOff(-27.034, 4, "auto"), "−27.03");
+        assert.equal(readOff(1.234e-12, 3, "auto"), "1.23 × 10⁻¹²");
+        assert.equal(readOff(0, 3, "auto"), "0.00");
+    });
+
+    test("say a small share as small, not as none", () => {
+        assert.equal(percent(0.61), "61.0 %");
+        assert.equal(percent(1e-6), "< 0.1 %");
+        assert.equal(percent(0), "0 %");
+    });
+
+    test("repeat what was typed only where that adds something", () => {
+        assert.equal(worthSaying("1550 nm", "1550 nm"), "");
+        assert.equal(worthSaying("1550", "1550 nm"), "");
+        assert.equal(worthSaying("1,58 µW", "1.580 µW = −28.013 dBm"), "1.580 µW = −28.013 dBm");
+    });
+
+    test("a title makes a file name", () => {
+        assert.equal(fileName("Ansa Ridge, west dome (Prüfung)"), "ansa-ridge-west-dome-prufung");
+        assert.equal(fileName("…"), "untitled");
+    });
+});
+
+describe("axes and labels", () => {
+    const axis = (scale) => ({ label: "l", unit: "u", scale });
+
+    test("a logarithmic axis names decades and thins them to the room", () => {
+        const { ticks, place } = scaleOf(axis("log"), [1e-18, 1e-2], [280, 0], 8, "auto");
+        const named = ticks.filter(({ power }) => power !== null);
+        assert.ok(named.length >= 3 && named.length <= 9, `${named.length}`);
+        assert.equal(place(1e-18), 280);
+        assert.equal(place(1e-2), 0);
+    });
+
+    test("an axis has a length even for one value", () => {
+        for (const scale of ["linear", "log"]) {
+            const { low, high } = scaleOf(axis(scale), [5], [0, 100], 5, "auto");
+            assert.ok(low < 5 && high > 5);
+        }
+    });
+
+    test("the name of a mark avoids the other names and stays in the frame", () => {
+        const frame = { x: 0, y: 0, width: 200, height: 100 };
+        const label = { width: 50, height: 16 };
+        const taken = [{ x: 0, y: 0, ...label }];
+        const box = bestPlace([{ x: 0, y: 0 }, { x: 190, y: 90 }], label, frame, taken, []);
+        assert.equal(overlap(box, taken[0]), false);
+        assert.ok(box.x + box.width <= 200 && box.y + box.height <= 100);
+    });
+});
