@@ -90,7 +90,7 @@ fn whatever_arrives_the_door_answers_and_does_not_throw() {
         JsValue::from_f64(3.0),
         JsValue::from_str("bench"),
         JsValue::TRUE,
-        Array::of(&[1.into(), 2.into()]).into(),
+        JSON::parse("[1, 2]").expect("JSON"),
         JsValue::symbol(Some("odd")),
         function,
         big,

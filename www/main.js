@@ -340,7 +340,16 @@ function toHash() {
 }
 
 byId("colophon").textContent = `Leastlight ${version}. Works offline; nothing leaves this page.`;
-addEventListener("beforeprint", () => document.body.setAttribute("data-printed", `Leastlight ${version}, printed ${new Date().toLocaleString("sv")}`));
+addEventListener("beforeprint", () => {
+  document.body.setAttribute("data-printed", `Leastlight ${version}, printed ${new Date().toLocaleString("sv")}`);
+  // A box cuts its text off on paper; the text itself does not.
+  for (const area of form().querySelectorAll("textarea")) {
+    const next = area.nextElementSibling;
+    const paper = next?.matches(".printed") ? next : h("pre", { class: "printed", "aria-hidden": "true" });
+    paper.textContent = area.value;
+    area.after(paper);
+  }
+});
 Object.assign(window, { leastlight: core });
 toHash();
 if (Object.keys(state.texts).length === 0) {

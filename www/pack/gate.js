@@ -36,7 +36,7 @@ const IN_SCRIPT = [
 const IN_MARKUP = [
     [
         "an attribute that loads or leads elsewhere",
-        /\s(?:src|href|xlink:href|action|formaction|srcset|imagesrcset|poster|data|ping|background|manifest|cite)\s*=\s*(?!"#|'#|"data:|'data:)\S+/gi,
+        /<[a-z][^>]*?\s(?:src|href|xlink:href|action|formaction|srcset|imagesrcset|poster|data|ping|background|manifest|cite)\s*=\s*(?!"#|'#|"data:|'data:)\S+/gi,
     ],
     ["a style outside the style sheet, which the policy drops", /<[a-z][^>]*\sstyle\s*=/gi],
     ["a handler in markup, which the policy drops", /<[a-z][^>]*\son[a-z]+\s*=/gi],
