@@ -214,6 +214,7 @@ for (const engine of ENGINES) {
         });
 
         test("reads a curve with the arrow keys", async () => {
+            await person.until("the chart is drawn", () => document.querySelector("svg.chart"));
             await person.run(() => document.querySelector("svg.chart").focus());
             await person.press("Home");
             const first = await person.read(".readout");
