@@ -19,6 +19,8 @@ export async function listen(own) {
     // What a browser sends its proxy first when the address begins with https or wss.
     server.on("connect", (request, socket) => {
         hear("CONNECT", request);
+        // A browser may hang up before it has read the refusal.
+        socket.on("error", () => {});
         socket.end("HTTP/1.1 403 Forbidden\r\n\r\n");
     });
     server.on("upgrade", (request, socket) => {
@@ -26,7 +28,8 @@ export async function listen(own) {
         socket.destroy();
     });
     server.on("clientError", (error, socket) => {
-        heard.push(`not HTTP: ${error.message}`);
+        // Bytes that are no HTTP were sent to somebody; a connection that the browser itself closed again said nothing.
+        if (error.code !== "ECONNRESET") heard.push(`not HTTP: ${error.message}`);
         socket.destroy();
     });
     await new Promise((ready) => server.listen(0, "127.0.0.1", ready));
