@@ -111,6 +111,9 @@ fn what_cannot_be_a_number_is_refused_with_a_reason() {
     assert!(refusal("1e400 W", &kind::POWER, Auto).contains("too large"));
     assert!(refusal("0 W", &kind::POWER_LEVEL, Auto).contains("no value in dBm"));
     assert!(refusal("-1 µW", &kind::POWER_LEVEL, Auto).contains("no value in dBm"));
+    // SCPI-1999 sends these numbers for "not a number" and "infinity".
+    assert!(refusal("9.91E37", &kind::POWER_LEVEL, Auto).contains("no reading"));
+    assert!(refusal("-9.900000E+37 W", &kind::POWER, Auto).contains("over range"));
     assert!(refusal("5 dB", &kind::NUMBER, Auto).contains("no unit"));
 }
 
@@ -142,5 +145,6 @@ fn a_field_is_filled_with_text_that_a_person_would_type() {
     assert_eq!(write::exact(-28.35, &kind::POWER_LEVEL), "−28.35 dBm");
     assert_eq!(write::exact(1550.0, &kind::WAVELENGTH), "1550 nm");
     assert_eq!(write::exact(1e-12, &kind::ERROR_RATIO), "1e−12");
+    assert_eq!(write::exact(0.5, &kind::ERROR_RATIO), "0.5");
     assert_eq!(write::exact(0.45, &kind::FRACTION), "0.45");
 }

@@ -107,8 +107,16 @@ impl Reader {
             }
         };
         if !limits.hold(number.value) {
-            let write = |value| write::exact(value, kind);
-            let sentence = format!("{title} {}; {} was given.", limits.sentence(write), write(number.value));
+            let write = |value| write::exact(rounded(value), kind);
+            // What a person typed is quoted, and what it came to where a unit stood between.
+            let was = match tree {
+                Tree::Text(text) if number.unit == kind.unit || number.unit.is_empty() => {
+                    format!("“{}”", text.trim())
+                }
+                Tree::Text(text) => format!("“{}” ({})", text.trim(), write(number.value)),
+                _ => write(number.value),
+            };
+            let sentence = format!("{title} {}; {was} was given.", limits.sentence(write));
             self.faults.push(Fault { allowed, ..Fault::new(pointer, Code::Range, tree.clone(), &sentence) });
             return None;
         }
@@ -116,6 +124,12 @@ impl Reader {
             self.understood.push((pointer.to_owned(), understood(&number, kind)));
         }
         Some(number)
+    }
+
+    /// Says how a typed text was understood, where that takes more than its number.
+    pub fn understand_as(&mut self, pointer: &str, said: String) {
+        self.understood.retain(|(known, _)| known != pointer);
+        self.understood.push((pointer.to_owned(), said));
     }
 
     /// One of some words; the first where none is given.

@@ -4,6 +4,8 @@ use super::field::{Field, Limits};
 use super::reader::Reader;
 use crate::physics::sensitivity;
 use crate::quantity::kind;
+use crate::quantity::read::Understood;
+use crate::quantity::write;
 use crate::tree::Tree;
 use serde::Serialize;
 
@@ -137,13 +139,38 @@ impl Source {
             linewidth_nm: reader.number(map.get("linewidth_nm"), "/source/linewidth_nm"),
             average_power_dbm: reader.number(map.get("average_power_dbm"), "/source/average_power_dbm"),
             format,
-            // A person may type the bit rate; two bits share a PAM4 symbol.
-            symbol_rate_baud: rate.map(|rate| match rate.counts_bits {
-                true => rate.value / format.bits_per_symbol(),
-                false => rate.value,
-            }),
-            extinction_ratio_db: reader.number(map.get("extinction_ratio_db"), "/source/extinction_ratio_db"),
+            symbol_rate_baud: rate.map(|rate| symbol_rate(&rate, format, reader)),
+            extinction_ratio_db: read_extinction_ratio(map.get("extinction_ratio_db"), reader),
             rin_db_per_hz: reader.number(map.get("rin_db_per_hz"), "/source/rin_db_per_hz"),
         })
     }
+}
+
+/// A person may type the bit rate; two bits share a PAM4 symbol.
+fn symbol_rate(rate: &Understood, format: Format, reader: &mut Reader) -> f64 {
+    let bits = format.bits_per_symbol();
+    if !rate.counts_bits || bits == 1.0 {
+        return rate.value;
+    }
+    let symbols = rate.value / bits;
+    let said = format!("{}, {bits} bits a symbol", write::exact(symbols, &kind::SYMBOL_RATE));
+    reader.understand_as("/source/symbol_rate_baud", said);
+    symbols
+}
+
+/// A perfectly dark zero is an absent ratio; a person may also write it as the infinite one that it is.
+fn read_extinction_ratio(tree: Option<&Tree>, reader: &mut Reader) -> Option<f64> {
+    const AT: &str = "/source/extinction_ratio_db";
+    match tree {
+        Some(Tree::Text(text)) if reader.mark().is_some() && is_infinite(text) => {
+            reader.understand_as(AT, "the lowest level is perfectly dark".to_owned());
+            None
+        }
+        other => reader.number(other, AT),
+    }
+}
+
+fn is_infinite(text: &str) -> bool {
+    let word = text.trim().trim_end_matches("dB").trim_end();
+    ["∞", "inf", "infinite", "infinity"].iter().any(|known| word.eq_ignore_ascii_case(known))
 }

@@ -37,6 +37,7 @@ const PREFIXES: [(&str, i32); 14] = [
 /// Reads `text` as a number of this kind. `Err` is the end of a sentence about what is wrong.
 pub fn read(text: &str, kind: &Kind, mark: DecimalMark) -> Result<Understood, String> {
     let found = digits(text, mark)?;
+    refuse_signals(found.times_ten_to(0), text)?;
     let (unit, prefix) = match found.rest {
         "" => {
             let value = finite(&found, 0, text)?;
@@ -55,6 +56,15 @@ pub fn read(text: &str, kind: &Kind, mark: DecimalMark) -> Result<Understood, St
         unit: unit.symbol,
         counts_bits: matches!(unit.convert, Convert::Bits),
     })
+}
+
+/// What an instrument sends when it has no value (SCPI-1999, volume 1, section 7.2.1.5).
+fn refuse_signals(number: f64, text: &str) -> Result<(), String> {
+    match number.abs() {
+        9.91e37 => Err(format!("“{text}” is how an instrument says that it has no reading")),
+        9.9e37 => Err(format!("“{text}” is how an instrument says that it is over range")),
+        _ => Ok(()),
+    }
 }
 
 fn finite(found: &Digits, shift: i32, text: &str) -> Result<f64, String> {

@@ -106,6 +106,7 @@ pub fn exact(value: f64, kind: &Kind) -> String {
             let (power, prefix) = prefix_for(exponent);
             spaced(place_point(&digits, exponent - power), &format!("{prefix}{}", kind.unit))
         }
+        Style::Scientific if (-2..4).contains(&exponent) => place_point(&digits, exponent),
         Style::Scientific => shortest.replace('-', &MINUS.to_string()),
         Style::Plain if (-7..16).contains(&exponent) => spaced(place_point(&digits, exponent), kind.unit),
         Style::Plain => spaced(shortest.replace('-', &MINUS.to_string()), kind.unit),

@@ -71,7 +71,7 @@ for (const engine of ENGINES) {
             const before = await headline();
             await person.fill("/detector/avalanche/gain", "0.5");
             await person.until("the answer is dimmed", () => document.querySelector("#answer.stale"));
-            assert.equal(await fault("/detector/avalanche/gain"), "The gain must lie between 1 and 1000000; 0.5 was given.");
+            assert.equal(await fault("/detector/avalanche/gain"), "The gain must lie between 1 and 1000000; “0.5” was given.");
             assert.equal(await headline(), before);
             assert.equal(await person.value("/detector/avalanche/gain"), "0.5", "what was typed stays");
             const said = await person.run((input) => {
