@@ -167,6 +167,7 @@ const MAY_BE_ABSENT: &[&str] = &[
     "best_gain",
     "gain",
     "improvement_db",
+    "closed_form_gain",
     "none_because",
     "error_floor",
     "responsivity_set_a_per_w",

@@ -9,7 +9,6 @@ pub mod spectral;
 
 use crate::bench::Bench;
 use crate::fault::Faults;
-use curve::Curve;
 use serde::Serialize;
 
 /// Named numbers of an answer; a number that does not exist for this bench is absent.
@@ -56,14 +55,4 @@ pub enum Answer {
     Sensitivity(Box<sensitivity::Answer>),
     /// What a reading is worth.
     Reading(Box<reading::Answer>),
-}
-
-impl Answer {
-    /// Its curves.
-    pub fn curves(&self) -> &[Curve] {
-        match self {
-            Answer::Sensitivity(answer) => &answer.curves,
-            Answer::Reading(answer) => &answer.curves,
-        }
-    }
 }

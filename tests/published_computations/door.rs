@@ -48,6 +48,7 @@ fn sensitivity(given: &mut Inputs) -> Result<Outputs, String> {
     for (name, part, key) in [
         ("best_gain", "best_gain", "gain"),
         ("best_gain_dbm", "best_gain", "average_power_dbm"),
+        ("closed_form_gain", "best_gain", "closed_form_gain"),
         ("ideal_photons_per_bit", "quantum_limit", "photons_per_bit"),
         ("ideal_dbm", "quantum_limit", "average_power_dbm"),
         ("error_floor", "none_because", "error_floor"),

@@ -240,6 +240,21 @@ def receivers():
                       "Communication Systems, ch. 4, from memory); 10 h f B by hand", "exact", "ask_sensitivity", bench,
                       {"ideal_photons_per_bit": 10, "ideal_dbm": 10 * mp.log10(10 * H * C / mp.mpf("1.55e-6") * 10**10 * 1000)},
                       {"relative": 1e-14, "why": "a handful of roundings"}))
+    # In its own limit (dark zero, no dark current, Q form) the closed form and the full model must agree.
+    for r, k, sigma, bn, q in [(1.0, 0.7, 1e-7, 1e9, 6), (0.8, 0.02, 1e-8, 5e8, 6), (0.9, 0.45, 5e-7, 5e9, 7)]:
+        best = mp.sqrt((mp.mpf(sigma) / (Q * q * mp.mpf(bn)) + mp.mpf(k) - 1) / mp.mpf(k))
+        power = 2 * Q * mp.mpf(bn) / mp.mpf(r) * q * q * (mp.mpf(k) * best + 1 - mp.mpf(k))
+        bench = {"source": {"format": "nrz"}, "detector": {"responsivity": {"kind": "value", "a_per_w": r},
+                 "avalanche": {"gain": 1, "ionisation_ratio": k}},
+                 "amplifier": {"noise": {"kind": "rms", "current_a": sigma}, "noise_bandwidth_hz": bn},
+                 "decision": {"target_error_ratio": tail(mp.mpf(q)), "threshold": "q"}}
+        cases.append(case(f"closed-form-best-gain-k-{k}", "M^2 k = s/(q Q B) + k - 1 and P = (2qB/R)Q^2(kM + 1 - k): the textbook's closed form "
+                          f"(G. P. Agrawal, Fiber-Optic Communication Systems, ch. 4, from memory), derived again by hand; mpmath {mp.__version__}",
+                          "independent", "ask_sensitivity", bench,
+                          {"best_gain": best, "closed_form_gain": best, "best_gain_dbm": 10 * mp.log10(power * 1000)},
+                          {"best_gain": {"relative": 1e-6, "why": "the bottom of a valley is flat: the root of the search's 1e-13"},
+                           "closed_form_gain": {"relative": 1e-13, "why": "a handful of roundings"},
+                           "best_gain_dbm": {"absolute": 1e-11, "why": "double arithmetic and a root found to 1e-14"}}))
     return "# Sensitivities, through the door. Written by tests/reference/door.py.\n\n" + "\n".join(cases)
 
 

@@ -8,13 +8,16 @@ use super::curve::Curve;
 use super::shown::Shown;
 use crate::bench::Bench;
 use crate::bench::decision::Threshold as Rule;
+use crate::bench::source::Format;
 use crate::fault::Faults;
+use crate::physics::closed_form::{self, IdealLink};
 use crate::physics::decibel::{dbm_from_watt, watt_from_dbm};
 use crate::physics::decision::{Threshold, decide, q_factors};
 use crate::physics::levels::modulation_amplitude_w;
 use crate::physics::receiver::Noise;
 use crate::physics::sensitivity::{BestGain, Link, NoPower, best_gain, least_average_power_w};
 use crate::physics::{light, quantum_limit};
+use crate::statistics::normal::upper_tail_quantile;
 use serde::Serialize;
 use setup::Setup;
 
@@ -94,6 +97,9 @@ pub struct BestGainFound {
     pub average_power_dbm: f64,
     /// How much better than at the bench's gain, dB; absent when that reaches the target at no power.
     pub improvement_db: Option<f64>,
+    /// The best gain by the textbook's closed form, which knows neither extinction nor dark current nor
+    /// intensity noise; absent where it has no upper end, and with more than two levels.
+    pub closed_form_gain: Option<f64>,
 }
 
 /// What an ideal counter of photons would need: a one is missed when no photon of it comes, ½e^(−N).
@@ -229,7 +235,22 @@ fn find_best_gain(setup: &Setup, here_dbm: Option<f64>) -> Option<BestGainFound>
         gain,
         average_power_dbm: best_dbm,
         improvement_db: here_dbm.map(|here_dbm| here_dbm - best_dbm),
+        closed_form_gain: closed_form_gain(setup),
     })
+}
+
+fn closed_form_gain(setup: &Setup) -> Option<f64> {
+    let receiver = setup.link().receiver;
+    let ideal = IdealLink {
+        q_factor: upper_tail_quantile(setup.target),
+        responsivity_a_per_w: receiver.responsivity_a_per_w,
+        noise_bandwidth_hz: receiver.noise_bandwidth_hz,
+        circuit_noise_a: receiver.circuit_noise_a,
+    };
+    match setup.format {
+        Format::Nrz => closed_form::best_gain(&ideal, setup.ionisation_ratio?),
+        Format::Pam4 => None,
+    }
 }
 
 fn none_because(why: &NoPower, setup: &Setup) -> NoneBecause {

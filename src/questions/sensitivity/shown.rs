@@ -102,7 +102,8 @@ fn gains(setup: &Setup, answer: &Answer) -> Vec<Fact> {
     facts.extend(answer.best_gain.as_ref().map(|best| {
         let there = format!("{} dBm", fixed(best.average_power_dbm, 2));
         let better = best.improvement_db.map(|db| format!(", {} dB better", fixed(db.max(0.0), 2)));
-        let note = format!("{there}{}", better.unwrap_or_default());
+        let closed = best.closed_form_gain.map(|gain| format!("; closed form {}", significant(gain, 3)));
+        let note = format!("{there}{}{}", better.unwrap_or_default(), closed.unwrap_or_default());
         match best.gain {
             Some(gain) => Fact::number("Best gain", gain).noted(note),
             None => Fact {
@@ -242,6 +243,11 @@ fn notes(setup: &Setup, bench: &Bench, answer: &Answer) -> Vec<String> {
         "No intersymbol interference, jitter or reflections are counted; the eye is open.".to_owned(),
     ];
     if setup.ionisation_ratio.is_some() {
+        notes.push(
+            "The closed form of the best gain, k·M² = σ/(q·Q·B) + k − 1, is that of a dark zero without dark current \
+             and intensity noise."
+                .to_owned(),
+        );
         notes.push(
             "Excess noise F = kM + (1 − k)(2 − 1/M): R. J. McIntyre, IEEE Trans. Electron Devices ED-13, 164 (1966)."
                 .to_owned(),
