@@ -5,13 +5,7 @@
 /** @typedef {Door & { initSync(source: { module: BufferSource | WebAssembly.Module }): unknown }} Glue */
 
 /** @returns {Glue} what the binding script left as a global */
-const glue = () => /** @type {any} */ (globalThis).wasm_bindgen ?? bareGlue();
-
-/** @returns {Glue} A top-level `let` is no property of the global object. */
-function bareGlue() {
-  // @ts-ignore: declared by the binding script that stands before this one
-  return wasm_bindgen;
-}
+const glue = () => /** @type {any} */ (globalThis).wasm_bindgen;
 
 /** @type {WebAssembly.Module | null} */
 let compiled = null;
@@ -75,17 +69,20 @@ function guarded(use, otherwise) {
   }
 }
 
+/** What stands where a trap took the answer: a fault that no field owns. */
+const failed = () => [{ pointer: "", code: "unreadable", sentence: "The calculation failed; change something and it is tried again." }];
+
 /** The door as the page uses it: plain values out, no exception. @type {Door} */
 export const core = {
   questions: () => guarded((door) => door.questions(), []),
   fields: () => guarded((door) => door.fields(), []),
   version: () => guarded((door) => door.version(), ""),
   demo: () => guarded((door) => door.demo(), {}),
-  ask: (question, bench, options) => guarded((door) => door.ask(question, bench, options), { faults: [] }),
-  understand: (typed, mark) => guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: [] }),
-  read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: [] }),
-  read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: [] }),
-  read_bench: (text) => guarded((door) => door.read_bench(text), { faults: [] }),
+  ask: (question, bench, options) => guarded((door) => door.ask(question, bench, options), { faults: failed() }),
+  understand: (typed, mark) => guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: failed() }),
+  read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: failed() }),
+  read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: failed() }),
+  read_bench: (text) => guarded((door) => door.read_bench(text), { faults: failed() }),
   write_number: (pointer, value, mark) => guarded((door) => door.write_number(pointer, value, mark), String(value)),
-  write_table: (pointer, bench, mark) => guarded((door) => door.write_table(pointer, bench, mark), { faults: [] }),
+  write_table: (pointer, bench, mark) => guarded((door) => door.write_table(pointer, bench, mark), { faults: failed() }),
 };

@@ -62,7 +62,10 @@ function update() {
   const concerns = (/** @type {Fault} */ { pointer }) => question.fields.some((field) => under(pointer, field) || under(field, pointer));
   const blocking = understood.faults.filter(concerns);
   const asked = blocking.length === 0 ? core.ask(question.name, understood.bench) : { faults: blocking };
-  if (asked.answer) good.set(question.name, { answer: asked.answer, bench: understood.bench });
+  if (asked.answer) {
+    good.set(question.name, { answer: asked.answer, bench: understood.bench });
+    byId("banner").hidden = true;
+  }
   const missing = blocking.length === 0 ? (asked.faults ?? []) : [];
   const faults = [...understood.faults, ...missing];
   const homeless = showFaults(faults, all, texts);

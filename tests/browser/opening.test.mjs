@@ -19,3 +19,21 @@ for (const engine of ENGINES) {
         }
     });
 }
+
+// The colours of the dark scheme are others, so they are looked at by themselves.
+for (const engine of ["chromium", "firefox"]) {
+    test(`the page has no barrier in the dark in ${engine}`, async () => {
+        const person = await start(engine, { dark: true });
+        try {
+            await person.openPage();
+            assert.ok(await person.run(() => matchMedia("(prefers-color-scheme: dark)").matches), "it is dark");
+            for (const question of ["sensitivity", "reading"]) {
+                await person.run((name) => document.querySelector(`input[name="question"][value="${name}"]`).click(), question);
+                await person.photograph(`${question}-dark`);
+                assert.deepEqual(await person.barriers(), [], question);
+            }
+        } finally {
+            await person.close();
+        }
+    });
+}

@@ -293,6 +293,26 @@ for (const engine of ENGINES) {
             assert.deepEqual(wrong, []);
         });
 
+        test("sees a failing core replaced, and loses nothing", async () => {
+            await person.run(() => document.querySelector('input[name="question"][value="reading"]').click());
+            const before = await headline();
+            // One keystroke meets a core that traps; the next meets the fresh one.
+            await person.run(() => {
+                globalThis.wasm_bindgen.ask = () => {
+                    throw new WebAssembly.RuntimeError("planted");
+                };
+                const input = document.forms.bench.elements.namedItem("/meter/reading_dbm");
+                input.value = "-21";
+                input.dispatchEvent(new Event("input", { bubbles: true }));
+            });
+            assert.match(await person.read("#banner"), /failed by a mistake of this program \((RuntimeError: )?planted\)\. It was started afresh; nothing you typed is lost/);
+            assert.equal(await headline(), before, "the last good answer stays");
+            assert.equal(await person.value("/meter/reading_dbm"), "-21");
+            await person.fill("/meter/reading_dbm", "-21.5 dBm");
+            await person.until("it answers again", () => document.getElementById("banner").hidden && !document.querySelector("#answer.stale"));
+            assert.notEqual(await headline(), before);
+        });
+
         test("and all the while there was no complaint and no request", async () => {
             assert.deepEqual(await person.complaints(), []);
             assert.deepEqual(person.listener.heard, []);

@@ -27,7 +27,13 @@ pub fn for_node(wasm: &Path, folder: &Path) -> Result<()> {
 pub fn for_page(wasm: &Path, folder: &Path) -> Result<()> {
     // Without the default path the glue never looks for a .wasm beside the page.
     let mut bindgen = bindgen(wasm);
-    generate(bindgen.no_modules(true)?.no_modules_global(GLOBAL)?.omit_default_module_path(true), folder)
+    generate(bindgen.no_modules(true)?.no_modules_global(GLOBAL)?.omit_default_module_path(true), folder)?;
+    // A core that has trapped is replaced by running the glue once more, and `let` would forbid the second time.
+    let file = folder.join(format!("{NAME}.js"));
+    let glue = std::fs::read_to_string(&file).with_context(|| format!("cannot read {}", file.display()))?;
+    let rest =
+        glue.strip_prefix(&format!("let {GLOBAL} = ")).context("the glue does not begin as it used to")?;
+    std::fs::write(&file, format!("var {GLOBAL} = {rest}")).context("cannot write the glue")
 }
 
 fn bindgen(wasm: &Path) -> Bindgen {
