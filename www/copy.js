@@ -16,7 +16,9 @@ let fade;
 
 /** @param {string} text @param {string} what as it is spoken: "Copied …" */
 export async function copy(text, what) {
-  const copied = (await byClipboard(text)) || bySelection(text);
+  // A spreadsheet takes the true minus sign for a letter.
+  const plain = text.replaceAll("−", "-");
+  const copied = (await byClipboard(plain)) || bySelection(plain);
   say(copied ? `Copied ${what}` : "This browser did not let the page copy; select the text and copy it by hand");
 }
 

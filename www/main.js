@@ -34,9 +34,9 @@ const all = controls();
 addNotes(core.fields());
 
 /** @type {{ texts: Texts, history: import("./history.js").History, question: string, mark: Mark, demo: boolean }} */
-const state = load("state", { texts: {}, history: emptyHistory(), question: questions[0]?.name ?? "", mark: "auto", demo: true });
+const state = { texts: {}, history: emptyHistory(), question: questions[0]?.name ?? "", mark: "auto", demo: true, ...soundState(load("state", {})) };
 /** @type {Kept[]} */
-let kept = load("notebook", []);
+let kept = notebook.sound(load("notebook", []));
 /** Ids of the answers to compare. @type {string[]} */
 let chosen = [];
 /** @type {Kept | null} */
@@ -45,6 +45,12 @@ let removed = null;
 const good = new Map();
 /** What a file could not be read for. @type {string[]} */
 let fileFaults = [];
+
+/** The store can be written by any page from disk; what is not of our making is left alone. @param {any} found */
+function soundState(found) {
+  const ours = typeof found?.texts === "object" && found.texts !== null && Array.isArray(found.history?.past) && Array.isArray(found.history?.future);
+  return ours && Object.values(found.texts).every((text) => typeof text === "string") ? found : {};
+}
 
 // --- from texts to an answer --------------------------------------------------------------------------------------
 
@@ -133,6 +139,7 @@ function showTools() {
 /** @param {Texts} texts @param {string | null} open the field being typed in @param {string} [name] of the step */
 function change(texts, open, name) {
   const named = (/** @type {import("./history.js").Changes} */ changes) => name ?? stepName(changes);
+  fileFaults = [];
   state.history = recorded(state.history, state.texts, texts, named, open);
   state.texts = texts;
   update();
@@ -331,7 +338,7 @@ byId("help-open").addEventListener("click", () => help.showModal());
 byId("help-close").addEventListener("click", () => help.close());
 addEventListener("hashchange", toHash);
 onForeignChange("notebook", () => {
-  kept = load("notebook", []);
+  kept = notebook.sound(load("notebook", []));
   showNotebook();
 });
 

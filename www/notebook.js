@@ -33,10 +33,13 @@ export function read(text) {
   }
   if (file?.schema !== SCHEMA) return { sentence: `This program reads notebooks of the format “${SCHEMA}”; “${file?.schema}” was given.` };
   const kept = Array.isArray(file.kept) ? file.kept : [];
-  const sound = kept.filter(isKept);
-  if (sound.length < kept.length) return { sentence: `${kept.length - sound.length} of the ${kept.length} answers in this notebook are damaged; none was taken.` };
-  return { kept: sound };
+  const whole = sound(kept);
+  if (whole.length < kept.length) return { sentence: `${kept.length - whole.length} of the ${kept.length} answers in this notebook are damaged; none was taken.` };
+  return { kept: whole };
 }
+
+/** The entries of a list that are whole. @param {unknown} list @returns {Kept[]} */
+export const sound = (list) => (Array.isArray(list) ? list.filter(isKept) : []);
 
 /** @param {any} entry @returns {entry is Kept} */
 function isKept(entry) {

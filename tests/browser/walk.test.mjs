@@ -211,6 +211,8 @@ for (const engine of ENGINES) {
             await person.giveFile("#bench-file", "holiday.json", '{ "schema": "leastlight.bench/1", "sourse": {} }');
             await person.until("it is said", () => document.getElementById("summary").innerText.includes("sourse"));
             assert.equal(await headline(), before);
+            await person.fill("/surroundings/temperature_c", "22 °C");
+            assert.equal(await person.run(() => document.getElementById("summary").hidden), true, "it is not said for ever");
         });
 
         test("reads a curve with the arrow keys", async () => {
@@ -311,6 +313,16 @@ for (const engine of ENGINES) {
             await person.fill("/meter/reading_dbm", "-21.5 dBm");
             await person.until("it answers again", () => document.getElementById("banner").hidden && !document.querySelector("#answer.stale"));
             assert.notEqual(await headline(), before);
+        });
+
+        test("finds a store that somebody else wrote into harmless", async () => {
+            for (const odd of ["{", '{"texts":3}', '{"texts":{"/path/loss_db":3},"history":{"past":[],"future":[]}}', "null"]) {
+                await person.run((text) => {
+                    for (const key of ["state", "notebook"]) localStorage.setItem(`leastlight/1/${key}`, text);
+                }, odd);
+                await person.reload();
+                await person.until("the demonstration bench is back", () => !document.getElementById("demo").hidden && document.querySelector(".headline-figure"));
+            }
         });
 
         test("and all the while there was no complaint and no request", async () => {

@@ -10,7 +10,7 @@ import { bestPlace, overlap } from "../../www/chart/labels.js";
 import { fileName } from "../../www/files.js";
 import { worthSaying } from "../../www/fields.js";
 import { closed, emptyHistory, recorded, redone, undone } from "../../www/history.js";
-import { SCHEMA, claims, compared, fileText, joined, read } from "../../www/notebook.js";
+import { SCHEMA, claims, compared, fileText, joined, read, sound } from "../../www/notebook.js";
 import { marked, readOff, spreadsheet } from "../../www/numbers.js";
 
 const control = (name, kind = "number", when = [], groups = []) => ({ name, kind, when, groups });
@@ -96,6 +96,11 @@ describe("the notebook", () => {
         assert.match(read('{"schema":"leastlight.notebook/9"}').sentence, /leastlight\.notebook\/9/);
         assert.match(read(JSON.stringify({ schema: SCHEMA, kept: [a, { id: 1 }] })).sentence, /1 of the 2 answers/);
         assert.equal(claims('{"schema":"leastlight.bench/1"}'), false);
+    });
+
+    test("passes over what is no answer", () => {
+        assert.deepEqual(sound([a, null, 3, { ...b, texts: { "/path/loss_db": 3 } }]), [a]);
+        assert.deepEqual(sound("notebook"), []);
     });
 
     test("takes the same answer once, newest first", () => {

@@ -10,7 +10,8 @@ import { pathToFileURL } from "node:url";
 /** Names of vocabularies: they look like addresses, and nothing is ever fetched from them. */
 const VOCABULARIES = /\bhttp:\/\/www\.w3\.org\/(2000\/svg|1999\/xhtml|1999\/xlink|2000\/xmlns\/|XML\/1998\/namespace|1998\/Math\/MathML)(?![\w./-])/g;
 
-const ADDRESS = /\b(?:https?|wss?|ftp):\/*[\w[]|["'`(=]\s*\/\/[a-z0-9[]/gi;
+/** Slashes may be missing from an address, but then a quotation mark or an attribute must hold it: a minifier's `a?ws:b` is none. */
+const ADDRESS = /\b(?:https?|wss?|ftp):\/+[\w[]|["'`=]\s*(?:https?|wss?|ftp):[\w[]|["'`(=]\s*\/\/[a-z0-9[]/gi;
 
 /** What must stand nowhere: in markup, style or script. @type {[string, RegExp][]} */
 const EVERYWHERE = [
