@@ -333,6 +333,8 @@ mark.addEventListener("change", () => {
   update();
   showNotebook();
 });
+// The short answer at the foot of a phone is for those who do not see the long one.
+new IntersectionObserver(([entry]) => byId("mini").classList.toggle("seen", entry?.isIntersecting ?? false)).observe(byId("question"));
 const help = /** @type {HTMLDialogElement} */ (byId("help"));
 byId("help-open").addEventListener("click", () => help.showModal());
 byId("help-close").addEventListener("click", () => help.close());

@@ -259,6 +259,11 @@ for (const engine of ENGINES) {
             });
         });
 
+        test("scrolls its areas and not itself, on a laptop", async () => {
+            await person.resize(1366, 768);
+            assert.equal(await person.run(() => document.documentElement.scrollHeight - document.documentElement.clientHeight), 0);
+        });
+
         test("finds no barrier, on either question, on a laptop and on a phone", async () => {
             for (const [width, height] of [[1366, 768], [390, 844]]) {
                 await person.resize(width, height);
