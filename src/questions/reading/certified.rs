@@ -72,6 +72,12 @@ impl<'b> Certified<'b> {
                 let factor = power_factor(set, source);
                 Ok(Found { factor, set_a_per_w: Some(set), source_a_per_w: Some(source) })
             }
+            // At one wavelength the typical curve cancels, wherever it ends.
+            (CertificateForm::CorrectionFactor, typical) if set_nm == source_nm => {
+                let (correction, typical) = (value?, typical.as_ref().and_then(|typical| typical.at(set_nm)));
+                let source_a_per_w = typical.map(|a_per_w| a_per_w / correction);
+                Ok(Found { factor: correction, set_a_per_w: typical, source_a_per_w })
+            }
             (CertificateForm::CorrectionFactor, Some(typical)) => {
                 let correction = value?;
                 let set = typical.at_field(set_nm, SETTING, TYPICAL)?;
@@ -81,10 +87,6 @@ impl<'b> Certified<'b> {
                     set_a_per_w: Some(set),
                     source_a_per_w: Some(source / correction),
                 })
-            }
-            // At one wavelength the typical curve would cancel.
-            (CertificateForm::CorrectionFactor, None) if set_nm == source_nm => {
-                Ok(Found { factor: value?, set_a_per_w: None, source_a_per_w: None })
             }
             (CertificateForm::CorrectionFactor, None) => Err(Fault::missing(
                 "/detector/responsivity",
