@@ -10,10 +10,11 @@ use crate::fault::{Allowed, Code, Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
 use crate::questions::{Answer, QUESTIONS, Question};
-use crate::record::{self, CertificateTable, Choices, ResponsivityTable};
+use crate::record::{self, CertificateTable, Choices, Reading, ResponsivityTable};
 use crate::tree::Tree;
 use crate::typed;
 use serde::Serialize;
+use std::collections::BTreeMap;
 
 /// An answer with what was asked beside it.
 #[derive(Debug, Clone, PartialEq, Serialize)]
@@ -85,6 +86,49 @@ fn find_question(name: &str) -> Result<&'static Question, Faults> {
             ..Fault::new("/question", Code::Range, Tree::from(name), &sentence)
         }]
     })
+}
+
+/// What a page needs at each keystroke: the answer to a question about a bench as it was typed, or what it waits for.
+#[derive(Debug, Serialize)]
+pub struct Followed {
+    /// How each typed number was read, by pointer.
+    pub understood: BTreeMap<String, String>,
+    /// How each table of pasted cells was read, by pointer.
+    pub tables: BTreeMap<String, Reading>,
+    /// Everything that is wrong with the bench or missing for the question.
+    pub faults: Faults,
+    /// Those of them that stand between this question and its answer; empty when there is one.
+    pub blocking: Faults,
+    /// The answer.
+    pub answer: Option<Answer>,
+}
+
+/// Asks a question of a bench as it was typed. What is wrong in a place that the question does not read is
+/// named, but does not keep it from answering.
+pub fn follow(question: &str, typed: &Tree, decimal_mark: &str) -> Followed {
+    let typed::Understanding { bench, understood, tables, mut faults } = understand(typed, decimal_mark);
+    let found = find_question(question);
+    let concerns = |fault: &Fault| {
+        let fields = found.as_ref().map_or(&[""][..], |question| question.fields);
+        fields.iter().any(|field| under(&fault.pointer, field) || under(field, &fault.pointer))
+    };
+    let mut blocking: Faults = faults.iter().filter(|fault| concerns(fault)).cloned().collect();
+    let mut answer = None;
+    if blocking.is_empty() {
+        match found.clone().and_then(|question| (question.ask)(&bench)) {
+            Ok(found) => answer = Some(found),
+            Err(missing) => {
+                faults.extend(missing.iter().cloned());
+                blocking = missing;
+            }
+        }
+    }
+    Followed { understood, tables, faults, blocking, answer }
+}
+
+/// Whether a pointer is that of a part or lies within it.
+fn under(pointer: &str, part: &str) -> bool {
+    pointer.strip_prefix(part).is_some_and(|rest| rest.is_empty() || rest.starts_with('/'))
 }
 
 /// Reads a bench in which numbers are the texts that a person typed.

@@ -38,6 +38,15 @@ pub fn understand(typed: JsValue, decimal_mark: &str) -> Result<JsValue, JsValue
     }
 }
 
+/// The answer to a question about a bench as it was typed, or what it waits for.
+#[wasm_bindgen]
+pub fn follow(question: &str, typed: JsValue, decimal_mark: &str) -> Result<JsValue, JsValue> {
+    match tree(typed, "") {
+        Ok(typed) => out(&door::follow(question, &typed, decimal_mark)),
+        Err(faults) => outcome::<()>("value", Err(faults)),
+    }
+}
+
 /// `{ value }` or `{ faults }`.
 #[wasm_bindgen]
 pub fn read_certificate(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {

@@ -119,3 +119,36 @@ fn tables_and_numbers_are_written_as_they_are_read() {
     assert_eq!(json["points"][0]["value"], bench["meter"]["certificate"]["points"][0]["value"]);
     assert_eq!(door::write_number("/source/wavelength_nm", 1551.7, "comma"), "1551,7 nm");
 }
+
+#[test]
+fn a_question_waits_for_what_it_reads_and_for_nothing_else() {
+    let mut bench = serde_json::to_value(door::demo()).expect("JSON");
+    bench["meter"]["reading_dbm"] = "three".into();
+    let typed = Tree::from_json(&bench.to_string()).expect("JSON");
+    let followed = door::follow("sensitivity", &typed, "auto");
+    assert!(followed.answer.is_some() && followed.blocking.is_empty(), "{:?}", followed.blocking);
+    assert_eq!(followed.faults[0].pointer, "/meter/reading_dbm", "it is named all the same");
+    let followed = door::follow("reading", &typed, "auto");
+    assert!(followed.answer.is_none());
+    assert_eq!(followed.blocking[0].pointer, "/meter/reading_dbm");
+}
+
+#[test]
+fn what_is_missing_for_a_question_is_a_fault_of_the_typed_bench_too() {
+    let typed = Tree::from_json(r#"{ "source": { "wavelength_nm": "1550 nm" } }"#).expect("JSON");
+    let followed = door::follow("reading", &typed, "auto");
+    let pointers: Vec<&str> = followed.blocking.iter().map(|fault| fault.pointer.as_str()).collect();
+    assert_eq!(pointers, ["/meter"]);
+    assert_eq!(followed.faults, followed.blocking);
+    assert_eq!(door::follow("colour", &typed, "auto").blocking[0].pointer, "/question");
+}
+
+#[test]
+fn following_a_typed_bench_gives_what_asking_the_bench_gives() {
+    for question in door::questions() {
+        let followed = door::follow(question.name, &door::demo(), "auto");
+        let asked =
+            door::ask(question.name, &door::demo(), &Tree::Null).expect("the demonstration bench is sound");
+        assert_eq!(followed.answer, Some(asked.answer));
+    }
+}

@@ -80,6 +80,8 @@ export const core = {
   demo: () => guarded((door) => door.demo(), {}),
   ask: (question, bench, options) => guarded((door) => door.ask(question, bench, options), { faults: failed() }),
   understand: (typed, mark) => guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: failed() }),
+  follow: (question, typed, mark) =>
+    guarded((door) => door.follow(question, typed, mark), { understood: {}, tables: {}, faults: failed(), blocking: failed(), answer: null }),
   read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: failed() }),
   read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: failed() }),
   read_bench: (text) => guarded((door) => door.read_bench(text), { faults: failed() }),

@@ -29,12 +29,15 @@
  * @typedef {{ form?: string, coverage_factor?: number | null, points: Record<string, number | null>[], reading: Reading }} ReadTable
  * @typedef {{ bench: Bench, understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[] }} Understood
  *
+ * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], blocking: Fault[], answer: Answer | null }} Followed
+ *
  * @typedef {Record<string, any>} Bench
  *
  * @typedef {{
  *   questions(): Question[], fields(): Field[], version(): string, demo(): Bench,
  *   ask(question: string, bench: Bench, options?: unknown): Asked,
  *   understand(typed: Bench, mark: Mark): Understood,
+ *   follow(question: string, typed: Bench, mark: Mark): Followed,
  *   read_certificate(text: string, choices?: unknown): { value?: ReadTable, faults?: Fault[] },
  *   read_responsivity(text: string, choices?: unknown): { value?: ReadTable, faults?: Fault[] },
  *   read_bench(text: string): { value?: Bench, faults?: Fault[] },

@@ -4,7 +4,7 @@ import { answerView } from "./answer.js";
 import { DETECTOR_TYPE, choicesOf, textsOf, typed } from "./bench.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { addNotes, controls, fill, firstChoices, form, inputOf, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse, under } from "./fields.js";
+import { addNotes, controls, fill, firstChoices, form, inputOf, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, recorded, redone, undone } from "./history.js";
 import { say } from "./copy.js";
@@ -41,7 +41,7 @@ let kept = notebook.sound(load("notebook", []));
 let chosen = [];
 /** @type {Kept | null} */
 let removed = null;
-/** The last good answer of each question, with the bench it belongs to. @type {Map<string, { answer: Answer, bench: Bench }>} */
+/** The last good answer of each question. @type {Map<string, Answer>} */
 const good = new Map();
 /** What a file could not be read for. @type {string[]} */
 let fileFaults = [];
@@ -59,24 +59,18 @@ function update() {
   const { texts, mark } = state;
   fill(texts);
   showAlternatives(texts);
-  const understood = core.understand(typed(all, texts), mark);
-  showUnderstood(texts, understood.understood);
-  showTables(texts, understood.tables, changeChoices);
   const question = questions.find(({ name }) => name === state.question) ?? questions[0];
   if (!question) return;
+  const { understood, tables, faults, blocking, answer } = core.follow(question.name, typed(all, texts), mark);
+  showUnderstood(texts, understood);
+  showTables(texts, tables, changeChoices);
   showUse(question.fields);
-  const concerns = (/** @type {Fault} */ { pointer }) => question.fields.some((field) => under(pointer, field) || under(field, pointer));
-  const blocking = understood.faults.filter(concerns);
-  const asked = blocking.length === 0 ? core.ask(question.name, understood.bench) : { faults: blocking };
-  if (asked.answer) {
-    good.set(question.name, { answer: asked.answer, bench: understood.bench });
+  if (answer) {
+    good.set(question.name, answer);
     byId("banner").hidden = true;
   }
-  const missing = blocking.length === 0 ? (asked.faults ?? []) : [];
-  const faults = [...understood.faults, ...missing];
-  const homeless = showFaults(faults, all, texts);
-  showSummary(homeless);
-  showAnswer(question.name, asked.faults ?? []);
+  showSummary(showFaults(faults, all, texts));
+  showAnswer(question.name, blocking);
   showTools();
   save("state", state);
 }
@@ -85,7 +79,7 @@ function update() {
 function showAnswer(question, faults) {
   const found = good.get(question);
   const answer = byId("answer");
-  answer.replaceChildren(...(found ? answerView(found.answer, state.mark, keep) : []));
+  answer.replaceChildren(...(found ? answerView(found, state.mark, keep) : []));
   const stale = faults.length > 0;
   answer.classList.toggle("stale", stale);
   const line = byId("state-line");
@@ -97,7 +91,7 @@ function showAnswer(question, faults) {
   if (keepButton) keepButton.disabled = stale;
   const mini = byId("mini");
   mini.hidden = !found;
-  setText(mini, found ? `${stale ? "Waiting; last: " : ""}${marked(found.answer.shown.headline.figure, state.mark)}` : "");
+  setText(mini, found ? `${stale ? "Waiting; last: " : ""}${marked(found.shown.headline.figure, state.mark)}` : "");
 }
 
 /** @param {Fault[]} faults @param {string[]} names */
@@ -181,9 +175,9 @@ function walk(step, says) {
 // --- notebook -----------------------------------------------------------------------------------------------------
 
 function keep() {
-  const found = good.get(state.question);
-  if (!found) return;
-  const { answer, bench } = found;
+  const answer = good.get(state.question);
+  if (!answer) return;
+  const { bench } = core.understand(typed(all, state.texts), state.mark);
   const asks = questions.find(({ name }) => name === state.question)?.asks ?? state.question;
   const when = new Date().toISOString();
   const id = `${when}-${Math.random().toString(36).slice(2, 8)}`;

@@ -305,7 +305,7 @@ for (const engine of ENGINES) {
             const before = await headline();
             // One keystroke meets a core that traps; the next meets the fresh one.
             await person.run(() => {
-                globalThis.wasm_bindgen.ask = () => {
+                globalThis.wasm_bindgen.follow = () => {
                     throw new WebAssembly.RuntimeError("planted");
                 };
                 const input = document.forms.bench.elements.namedItem("/meter/reading_dbm");
