@@ -1,5 +1,5 @@
 //! The one door: what the page, a script under Node and the tests call. Plain Rust, so that it is tested
-//! and fuzzed natively; [`crate::wasm`] only carries values across.
+//! and fuzzed natively; `wasm` only carries values across.
 
 use crate::bench::Bench;
 use crate::bench::field::{FieldRow, field, fields};

@@ -1,7 +1,7 @@
 //! Answers for a fibre bench, each with what it is made of: how little light a receiver needs, and what a
 //! power meter's reading is worth.
 //!
-//! A bench is described once ([`bench`]); every question ([`questions`]) is a pure function of that bench;
+//! A bench is described once ([`mod@bench`]); every question ([`questions`]) is a pure function of that bench;
 //! the page, a script under Node and the tests all ask through one door ([`door`]).
 
 pub mod bench;

@@ -47,6 +47,7 @@ step "source is formatted" cargo fmt --all --check
 step "clippy" cargo clippy --locked --workspace --all-targets -- -D warnings
 step "clippy, wasm" cargo clippy --locked --target "$wasm_target" --lib --test wasm -- -D warnings
 step "core" cargo test --locked
+step "documentation" env RUSTDOCFLAGS="-D warnings" cargo doc --locked --no-deps --quiet
 # With the runner, as it was built: other features would compile everything below it a second time.
 step "packer" cargo test --locked --package pack --features runner
 step "boundary, in Node" wasm_tests

@@ -16,13 +16,12 @@ import { chartFigure } from "./chart/figure.js";
 /**
  * @param {Answer} answer
  * @param {Mark} mark
- * @param {() => void} keep
  * @returns {HTMLElement[]}
  */
-export function answerView(answer, mark, keep) {
+export function answerView(answer, mark) {
   const { shown } = answer;
   const parts = [
-    headline(shown, mark, keep),
+    headline(shown, mark),
     doubts(shown, mark),
     facts(shown, mark),
     cautions(shown, mark),
@@ -34,8 +33,8 @@ export function answerView(answer, mark, keep) {
   return parts.filter((part) => part instanceof HTMLElement);
 }
 
-/** @param {Shown} shown @param {Mark} mark @param {() => void} keep */
-function headline(shown, mark, keep) {
+/** @param {Shown} shown @param {Mark} mark */
+function headline(shown, mark) {
   const figure = marked(shown.headline.figure, mark);
   return h(
     "div",
@@ -45,7 +44,7 @@ function headline(shown, mark, keep) {
     h(
       "div",
       { class: "actions" },
-      h("button", { type: "button", class: "main", id: "keep", click: keep }, "Keep this answer"),
+      h("button", { type: "button", class: "main", id: "keep" }, "Keep this answer"),
       copyButton(figure, figure, "Copy figure"),
       h("button", { type: "button", click: () => copy(answerText(shown, mark), "the answer") }, "Copy answer"),
     ),
