@@ -12,6 +12,7 @@ pub mod path;
 pub mod points;
 pub mod reader;
 pub mod source;
+pub mod spectrum;
 pub mod surroundings;
 
 use crate::fault::{Code, Fault, Faults};

@@ -2,6 +2,7 @@
 
 use super::field::{Field, Limits};
 use super::reader::Reader;
+use super::spectrum::Spectrum;
 use crate::physics::sensitivity;
 use crate::quantity::kind;
 use crate::quantity::read::Understood;
@@ -16,6 +17,8 @@ pub struct Source {
     pub wavelength_nm: Option<f64>,
     /// Full width of the line at half maximum, nm.
     pub linewidth_nm: Option<f64>,
+    /// Where its light lies; nothing means a line of the width above.
+    pub spectrum: Option<Spectrum>,
     /// Average power as launched, dBm.
     pub average_power_dbm: Option<f64>,
     /// How bits become levels.
@@ -131,12 +134,12 @@ impl Source {
             "rin_db_per_hz",
         ];
         let map = reader.part(tree, "/source", &keys)?;
-        reader.refuse(map.get("spectrum"), "/source/spectrum", "No question uses a spectrum; leave it null.");
         let format = reader.word(map.get("format"), "/source/format", FORMATS).unwrap_or(Format::Nrz);
         let rate = reader.understand(map.get("symbol_rate_baud"), "/source/symbol_rate_baud");
         Some(Source {
             wavelength_nm: reader.number(map.get("wavelength_nm"), "/source/wavelength_nm"),
             linewidth_nm: reader.number(map.get("linewidth_nm"), "/source/linewidth_nm"),
+            spectrum: Spectrum::read(map.get("spectrum"), reader),
             average_power_dbm: reader.number(map.get("average_power_dbm"), "/source/average_power_dbm"),
             format,
             symbol_rate_baud: rate.map(|rate| symbol_rate(&rate, format, reader)),

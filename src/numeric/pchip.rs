@@ -147,6 +147,11 @@ impl Pchip {
         Some(weights)
     }
 
+    /// Every x of the table: where the cubic pieces meet.
+    pub fn places(&self) -> impl Iterator<Item = f64> {
+        self.nodes.iter().map(|node| node.x)
+    }
+
     /// The first x of the table.
     pub fn first(&self) -> f64 {
         self.nodes.first().map_or(f64::INFINITY, |node| node.x)

@@ -21,3 +21,4 @@ pub mod noise;
 pub mod quantum_limit;
 pub mod receiver;
 pub mod sensitivity;
+pub mod spectrum;

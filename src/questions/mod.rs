@@ -41,7 +41,13 @@ pub const QUESTIONS: &[Question] = &[
     Question {
         name: "reading",
         asks: "What is this reading worth?",
-        fields: &["/source/wavelength_nm", "/source/linewidth_nm", "/meter", "/detector/responsivity"],
+        fields: &[
+            "/source/wavelength_nm",
+            "/source/linewidth_nm",
+            "/source/spectrum",
+            "/meter",
+            "/detector/responsivity",
+        ],
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
     },

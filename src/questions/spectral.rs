@@ -61,6 +61,14 @@ impl Spectral {
         }
     }
 
+    /// The wavelengths of the table, nm.
+    pub fn places_nm(&self) -> Vec<f64> {
+        match self {
+            Spectral::Point { wavelength_nm, .. } => vec![*wavelength_nm],
+            Spectral::Curve(curve) => curve.places().collect(),
+        }
+    }
+
     /// The ends of the table, nm.
     pub fn range_nm(&self) -> (f64, f64) {
         match self {

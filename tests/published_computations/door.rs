@@ -72,6 +72,8 @@ fn reading(given: &mut Inputs) -> Result<Outputs, String> {
         "responsivity_set_a_per_w",
         "responsivity_source_a_per_w",
         "slope_percent_per_nm",
+        "centre_wavelength_nm",
+        "averaging_percent",
     ];
     take(&answer, &names, &mut outputs);
     take(

@@ -8,6 +8,7 @@ use leastlight::physics::levels::{extinction_penalty_ratio, modulation_amplitude
 use leastlight::physics::light::{photon_energy_j, quantum_efficiency, responsivity_a_per_w};
 use leastlight::physics::noise::{intensity_noise_a2, shot_noise_a2, thermal_noise_a2};
 use leastlight::physics::quantum_limit::{photons_in_a_one, photons_per_bit};
+use leastlight::physics::spectrum::Spectrum;
 
 pub const ALL: &[(&str, Computation)] = &[
     ("photon", photon),
@@ -24,6 +25,7 @@ pub const ALL: &[(&str, Computation)] = &[
     ("average_from_amplitude", average_from_amplitude),
     ("levels", levels),
     ("power_units", power_units),
+    ("mean_of_a_parabola", mean_of_a_parabola),
 ];
 
 fn photon(given: &mut Inputs) -> Result<Outputs, String> {
@@ -125,4 +127,21 @@ fn power_units(given: &mut Inputs) -> Result<Outputs, String> {
     let power_w = given.number("power_w")?;
     let level_dbm = dbm_from_watt(power_w);
     Ok([("level_dbm", level_dbm.into()), ("back_w", watt_from_dbm(level_dbm).into())].into())
+}
+
+/// The mean of a parabola over a Gaussian line, and over its value at the centre.
+fn mean_of_a_parabola(given: &mut Inputs) -> Result<Outputs, String> {
+    let centre_nm = given.number("centre_nm")?;
+    let fwhm_nm = given.number("sigma_nm")? * (8.0 * std::f64::consts::LN_2).sqrt();
+    let (level, slope) = (given.number("level")?, given.number("slope_per_nm")?);
+    let curvature = given.number("curvature_per_nm2")?;
+    let parabola = |nm: f64| level + slope * (nm - centre_nm) + curvature * (nm - centre_nm).powi(2);
+    let line = Spectrum::Gaussian { centre_nm, fwhm_nm };
+    // Once whole, once cut at two places: both rules have to find it.
+    let mean = |breaks: &[f64]| -> f64 {
+        let shares = line.shares(breaks, 1000.0, 2000.0);
+        shares.iter().map(|part| part.share * parabola(part.wavelength_nm)).sum()
+    };
+    let (whole, pieces) = (mean(&[]), mean(&[centre_nm - 13.0, centre_nm + 40.0]));
+    Ok([("mean", vec![whole, pieces].into()), ("ratio", (whole / level).into())].into())
 }

@@ -8,8 +8,10 @@ use crate::physics::meter::{power_factor, power_factor_by_correction};
 use crate::questions::spectral::Spectral;
 use crate::tree::Tree;
 
-const CERTIFICATE: &str = "The certificate";
-const TYPICAL: &str = "The typical responsivity curve";
+/// The certificate as the subject of a sentence.
+pub(super) const CERTIFICATE: &str = "The certificate";
+/// The typical curve as the subject of a sentence.
+pub(super) const TYPICAL: &str = "The typical responsivity curve";
 
 /// The field that holds the wavelength of the light.
 pub const SOURCE: &str = "/source/wavelength_nm";
@@ -19,11 +21,11 @@ pub const SETTING: &str = "/meter/set_wavelength_nm";
 /// A meter as its certificate describes it.
 #[derive(Debug)]
 pub struct Certified<'b> {
-    certificate: &'b Certificate,
+    pub(super) certificate: &'b Certificate,
     /// Through the values of the certificate.
-    values: Spectral,
+    pub(super) values: Spectral,
     /// The typical responsivity of the head, where a certificate of correction factors needs one.
-    typical: Option<Spectral>,
+    pub(super) typical: Option<Spectral>,
 }
 
 /// The factor from reading to power, and the responsivities behind it where they are known.
@@ -101,14 +103,20 @@ impl<'b> Certified<'b> {
     /// The responsivity that the meter assumes at its setting is an exact number that turns the reading back into a
     /// current; only the value at the light's wavelength is in doubt. Its points' errors share the correlation r.
     pub fn relative_standard(&self, source_nm: f64) -> Option<f64> {
-        let k = self.certificate.coverage_factor?;
         let value = self.values.at(source_nm)?;
+        let weights = self.values.weights(source_nm)?;
+        self.combined(weights.into_iter().map(|(index, weight)| (index, weight / value)))
+    }
+
+    /// Combines the points' standard uncertainties, each times the relative change of the power by that point's value.
+    pub(super) fn combined(&self, changes: impl Iterator<Item = (usize, f64)>) -> Option<f64> {
+        let k = self.certificate.coverage_factor?;
         let r = self.certificate.point_correlation.unwrap_or(1.0);
         let (mut sum, mut squares) = (0.0, 0.0);
-        for (index, weight) in self.values.weights(source_nm)? {
+        for (index, change) in changes {
             let point = self.certificate.points.get(index)?;
-            if weight != 0.0 {
-                let contribution = weight * point.value * point.expanded_percent? / 100.0 / k / value;
+            if change != 0.0 {
+                let contribution = change * point.value * point.expanded_percent? / 100.0 / k;
                 sum += contribution;
                 squares += contribution * contribution;
             }

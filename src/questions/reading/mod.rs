@@ -1,6 +1,8 @@
 //! What is this reading worth?
 
 mod certified;
+mod light;
+mod over_spectrum;
 mod shown;
 
 use super::curve::{Axis, Curve, Line, Mark, Scale, evenly};
@@ -11,6 +13,7 @@ use crate::bench::meter::USUAL_WAVELENGTHS_NM;
 use crate::fault::{Fault, Faults};
 use crate::physics::decibel::{db_from_ratio, dbm_from_watt, watt_from_dbm};
 use certified::{Certified, SETTING, SOURCE};
+use light::Light;
 use serde::Serialize;
 
 /// The power behind a reading, when the light has another wavelength than the meter is set to.
@@ -32,6 +35,11 @@ pub struct Answer {
     pub responsivity_source_a_per_w: Option<f64>,
     /// Relative change of the power if the light's wavelength were 1 nm longer, per cent.
     pub slope_percent_per_nm: Option<f64>,
+    /// Mean wavelength of the light, nm.
+    pub centre_wavelength_nm: f64,
+    /// What the width of the light changes: its power over that of a single wavelength at the mean, less 1, per cent;
+    /// absent where the light is taken as one wavelength.
+    pub averaging_percent: Option<f64>,
     /// What the certificate's uncertainty makes of the power; absent where the certificate states none.
     pub certificate_uncertainty: Option<CertificateUncertainty>,
     /// Corrections of the same setting at other wavelengths of the light.
@@ -81,6 +89,7 @@ pub fn ask(bench: &Bench) -> Result<Answer, Faults> {
     let (mut answer, given) = figures(bench)?;
     answer.table = table(&given, bench);
     answer.curves.extend(correction_against_wavelength(&given, &answer));
+    answer.curves.extend(over_spectrum::curve(&given));
     answer.shown = shown::shown(bench, &given, &answer);
     Ok(answer)
 }
@@ -96,6 +105,7 @@ pub fn numbers(bench: &Bench) -> Result<Vec<(&'static str, Option<f64>)>, Faults
         ("correction_factor", Some(answer.correction_factor)),
         ("responsivity_set_a_per_w", answer.responsivity_set_a_per_w),
         ("responsivity_source_a_per_w", answer.responsivity_source_a_per_w),
+        ("averaging_percent", answer.averaging_percent),
         ("expanded_percent", uncertainty.map(|uncertainty| uncertainty.expanded_percent)),
     ])
 }
@@ -105,7 +115,7 @@ pub fn numbers(bench: &Bench) -> Result<Vec<(&'static str, Option<f64>)>, Faults
 struct Given<'b> {
     reading_dbm: f64,
     set_nm: f64,
-    source_nm: f64,
+    light: Light,
     coverage_factor: Option<f64>,
     certified: Certified<'b>,
 }
@@ -115,7 +125,12 @@ fn given(bench: &Bench) -> Result<Given<'_>, Faults> {
     let meter =
         needs.part(&bench.meter, "/meter", "A meter is needed: its reading, setting and certificate.");
     let source = needs.part(&bench.source, "/source", "A source is needed: its wavelength.");
-    let source_nm = source.and_then(|source| needs.number(source.wavelength_nm, SOURCE));
+    // A spectrum says by itself where the light lies.
+    let has_spectrum = source.is_some_and(|source| source.spectrum.is_some());
+    let source_nm = match source {
+        Some(source) if !has_spectrum => needs.number(source.wavelength_nm, SOURCE),
+        other => other.and_then(|source| source.wavelength_nm),
+    };
     let reading_dbm = meter.and_then(|meter| needs.number(meter.reading_dbm, "/meter/reading_dbm"));
     let set_nm = meter.and_then(|meter| needs.number(meter.set_wavelength_nm, SETTING));
     let sentence = "The meter's certificate is needed: its values at wavelengths.";
@@ -134,16 +149,18 @@ fn given(bench: &Bench) -> Result<Given<'_>, Faults> {
         .zip(certificate)
         .and_then(|(meter, certificate)| needs.found(Certified::new(bench, meter, certificate)));
     let coverage_factor = certificate.and_then(|certificate| certificate.coverage_factor);
+    let known = source.zip(certified.as_ref()).filter(|_| has_spectrum || source_nm.is_some());
+    let light = known.and_then(|(source, certified)| needs.found(Light::of(source, source_nm, certified)));
     let made = (|| {
-        let (reading_dbm, set_nm, source_nm) = (reading_dbm?, set_nm?, source_nm?);
-        Some(Given { reading_dbm, set_nm, source_nm, coverage_factor, certified: certified? })
+        let (reading_dbm, set_nm, light, certified) = (reading_dbm?, set_nm?, light?, certified?);
+        Some(Given { reading_dbm, set_nm, light, coverage_factor, certified })
     })();
     needs.all(made)
 }
 
 fn figures(bench: &Bench) -> Result<(Answer, Given<'_>), Faults> {
     let given = given(bench)?;
-    let found = given.certified.at(given.set_nm, given.source_nm).map_err(|fault| vec![fault])?;
+    let found = given.certified.over(given.set_nm, &given.light).map_err(|fault| vec![fault])?;
     let correction_db = db_from_ratio(found.factor);
     let power_dbm = given.reading_dbm + correction_db;
     let power_w = watt_from_dbm(power_dbm);
@@ -157,8 +174,10 @@ fn figures(bench: &Bench) -> Result<(Answer, Given<'_>), Faults> {
         responsivity_source_a_per_w: found.source_a_per_w,
         slope_percent_per_nm: given
             .certified
-            .relative_slope_per_nm(given.source_nm)
+            .relative_slope_per_nm_over(&given.light)
             .map(|slope| slope * 100.0),
+        centre_wavelength_nm: given.light.centre_nm(),
+        averaging_percent: averaging_percent(&given, found.factor),
         certificate_uncertainty: certificate_uncertainty(&given, power_w),
         table: Vec::new(),
         curves: Vec::new(),
@@ -167,9 +186,15 @@ fn figures(bench: &Bench) -> Result<(Answer, Given<'_>), Faults> {
     Ok((answer, given))
 }
 
+fn averaging_percent(given: &Given, factor: f64) -> Option<f64> {
+    let Light::Spread { centre_nm, .. } = given.light else { return None };
+    let at_centre = given.certified.at(given.set_nm, centre_nm).ok()?;
+    Some((factor / at_centre.factor - 1.0) * 100.0)
+}
+
 fn certificate_uncertainty(given: &Given, power_w: f64) -> Option<CertificateUncertainty> {
     let coverage_factor = given.coverage_factor?;
-    let standard = given.certified.relative_standard(given.source_nm)?;
+    let standard = given.certified.relative_standard_over(&given.light)?;
     let expanded = standard * coverage_factor;
     Some(CertificateUncertainty {
         standard_percent: standard * 100.0,
@@ -214,7 +239,11 @@ fn correction_against_wavelength(given: &Given, answer: &Answer) -> Option<Curve
         lines: vec![Line { name: "correction".to_owned(), x, y }],
         marks: vec![
             Mark::Level { name: "setting".to_owned(), axis: "x", at: given.set_nm },
-            Mark::Point { name: "this source".to_owned(), x: given.source_nm, y: answer.correction_db },
+            Mark::Point {
+                name: "this source".to_owned(),
+                x: given.light.centre_nm(),
+                y: answer.correction_db,
+            },
         ],
     })
 }

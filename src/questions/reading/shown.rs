@@ -1,9 +1,11 @@
 //! The reading as it is shown: headline, figures, table, doubts and notes.
 
+use super::light::{Light, NARROW_LINE_NM};
 use super::{Answer, CertificateUncertainty, Given, TableRow};
 use crate::bench::Bench;
 use crate::bench::meter::CertificateForm;
 use crate::physics::decibel::db_from_ratio;
+use crate::physics::spectrum::Spectrum;
 use crate::quantity::write::{brief, fixed, plus_minus, prefixed, significant};
 use crate::questions::shown::{Fact, GLASS, Headline, INVISIBLE_LIGHT, OVERLOAD, Shown, Table};
 
@@ -13,8 +15,8 @@ const LARGE_CORRECTION_DB: f64 = 1.0;
 /// A slope above this asks for a well-known wavelength, per cent per nm.
 const STEEP_PERCENT_PER_NM: f64 = 0.5;
 
-/// A line wider than this is no single wavelength, nm.
-const BROAD_LINE_NM: f64 = 5.0;
+/// A stated wavelength further than this from the mean of a spectrum is another light, nm.
+const STRAY_NM: f64 = 5.0;
 
 /// The answer, ready to be shown.
 pub fn shown(bench: &Bench, given: &Given, answer: &Answer) -> Shown {
@@ -28,8 +30,8 @@ pub fn shown(bench: &Bench, given: &Given, answer: &Answer) -> Shown {
         budgets: Vec::new(),
         tables: vec![table(answer)],
         cautions,
-        doubts: doubts(bench, answer),
-        notes: notes(bench, answer),
+        doubts: doubts(bench, given, answer),
+        notes: notes(bench, given, answer),
     }
 }
 
@@ -70,6 +72,13 @@ fn facts(given: &Given, answer: &Answer) -> Vec<Fact> {
     }));
     facts.extend(answer.responsivity_source_a_per_w.map(|value| {
         Fact::fixed("Responsivity at the light’s wavelength", value, 5, "A/W").noted("what made the current")
+    }));
+    if let Light::Spread { centre_nm, .. } = &given.light {
+        facts.push(Fact::fixed("Mean wavelength of the light", *centre_nm, 3, "nm"));
+    }
+    facts.extend(answer.averaging_percent.map(|percent| {
+        Fact::fixed("Change by the width of the light", percent, 4, "%")
+            .noted("of the power, against a single wavelength at the mean")
     }));
     facts.extend(answer.slope_percent_per_nm.map(|slope| {
         let note = "of the power, if the light were 1 nm longer";
@@ -115,13 +124,13 @@ fn table(answer: &Answer) -> Table {
         ]
     };
     Table {
-        title: "What the same reading is worth for light of other wavelengths".to_owned(),
+        title: "What the same reading is worth for light of other single wavelengths".to_owned(),
         columns: columns.map(str::to_owned).to_vec(),
         rows: answer.table.iter().map(row).collect(),
     }
 }
 
-fn doubts(bench: &Bench, answer: &Answer) -> Vec<String> {
+fn doubts(bench: &Bench, given: &Given, answer: &Answer) -> Vec<String> {
     let mut doubts = Vec::new();
     if answer.correction_db.abs() > LARGE_CORRECTION_DB {
         doubts.push(format!(
@@ -138,12 +147,14 @@ fn doubts(bench: &Bench, answer: &Answer) -> Vec<String> {
             fixed(db_from_ratio(1.0 + slope / 100.0).abs(), 3)
         ));
     }
-    let line_nm = bench.source.as_ref().and_then(|source| source.linewidth_nm);
-    if let Some(width_nm) = line_nm.filter(|width_nm| *width_nm > BROAD_LINE_NM) {
+    let source = bench.source.as_ref().filter(|source| source.spectrum.is_some());
+    let off_nm = source.and_then(|source| source.wavelength_nm).map(|nm| nm - given.light.centre_nm());
+    if let Some(off_nm) = off_nm.filter(|off_nm| off_nm.abs() > STRAY_NM) {
         doubts.push(format!(
-            "The source is {} nm wide but is treated as one wavelength. Where the responsivity bends across its \
-             line, correct with an average over its spectrum.",
-            brief(width_nm, 3)
+            "The source’s stated wavelength lies {} nm {} the mean of its spectrum, and the spectrum was used. Check \
+             that the spectrum is that of this source.",
+            fixed(off_nm.abs(), 1),
+            if off_nm > 0.0 { "above" } else { "below" }
         ));
     }
     if answer.certificate_uncertainty.is_none() {
@@ -156,7 +167,33 @@ fn doubts(bench: &Bench, answer: &Answer) -> Vec<String> {
     doubts
 }
 
-fn notes(bench: &Bench, answer: &Answer) -> Vec<String> {
+/// How the width of the light was dealt with.
+fn light_note(bench: &Bench, light: &Light) -> String {
+    let width_nm =
+        bench.source.as_ref().and_then(|source| source.linewidth_nm).filter(|width_nm| *width_nm > 0.0);
+    match (light, width_nm) {
+        (Light::Spread { spectrum: Spectrum::Table(_), .. }, _) => {
+            "The responsivity is averaged over the tabulated spectrum, linear in power per nm with straight lines between \
+             its points: ∫S R dλ / ∫S dλ. The meter is taken as linear."
+                .to_owned()
+        }
+        (Light::Spread { .. }, _) => {
+            "The responsivity is averaged over a Gaussian line of the stated full width at half maximum, cut at three \
+             times that width on each side: ∫S R dλ / ∫S dλ. The meter is taken as linear."
+                .to_owned()
+        }
+        (Light::One(_), Some(_)) => format!(
+            "A line of at most {} nm at the end of a table, or where no responsivity curve is known, is taken as one \
+             wavelength, in the range where the meter is linear.",
+            brief(NARROW_LINE_NM, 2)
+        ),
+        (Light::One(_), None) => {
+            "The light is taken as one wavelength, in the range where the meter is linear.".to_owned()
+        }
+    }
+}
+
+fn notes(bench: &Bench, given: &Given, answer: &Answer) -> Vec<String> {
     let certificate = bench.meter.as_ref().and_then(|meter| meter.certificate.as_ref());
     let method = match certificate.map(|certificate| certificate.form) {
         Some(CertificateForm::CorrectionFactor) if answer.responsivity_set_a_per_w.is_none() => {
@@ -173,7 +210,7 @@ fn notes(bench: &Bench, answer: &Answer) -> Vec<String> {
         "Between points: shape-preserving cubic interpolation (F. N. Fritsch, J. Butland, SIAM J. Sci. Stat. \
          Comput. 5, 300 (1984)); nothing beyond the ends. Wavelengths are in vacuum."
             .to_owned(),
-        "The light is taken as one wavelength, in the range where the meter is linear.".to_owned(),
+        light_note(bench, &given.light),
     ];
     if answer.certificate_uncertainty.is_some() {
         let correlation = certificate.and_then(|certificate| certificate.point_correlation).unwrap_or(1.0);
