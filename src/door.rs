@@ -10,7 +10,7 @@ use crate::fault::{Allowed, Code, Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
 use crate::questions::{Answer, QUESTIONS, Question};
-use crate::record::{self, CertificateTable, Choices, Reading, ResponsivityTable};
+use crate::record::{self, CertificateTable, Choices, Reading, ResponsivityTable, SpectrumTable};
 use crate::tree::Tree;
 use crate::typed;
 use serde::Serialize;
@@ -153,6 +153,11 @@ pub fn read_certificate(text: &str, choices: &Tree) -> Result<CertificateTable, 
 /// Reads a table of responsivities from pasted cells or a file's text.
 pub fn read_responsivity(text: &str, choices: &Tree) -> Result<ResponsivityTable, Faults> {
     record::read_responsivity(text, &Choices::from_tree(choices, "/choices")?)
+}
+
+/// Reads a spectrum from pasted cells or a file's text.
+pub fn read_spectrum(text: &str, choices: &Tree) -> Result<SpectrumTable, Faults> {
+    record::read_spectrum(text, &Choices::from_tree(choices, "/choices")?)
 }
 
 /// Reads the text of a bench file.

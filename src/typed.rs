@@ -6,8 +6,8 @@ use crate::bench::reader::Reader;
 use crate::fault::{Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::record::{
-    self, Choices, Reading, read_certificate, read_responsivity, write_certificate_points,
-    write_responsivity_points,
+    self, Choices, Reading, read_certificate, read_responsivity, read_spectrum, write_certificate_points,
+    write_responsivity_points, write_spectrum_points,
 };
 use crate::tree::Tree;
 use serde::Serialize;
@@ -68,6 +68,7 @@ struct Place {
 }
 
 const PLACES: &[Place] = &[
+    Place { pointer: "/source/spectrum", read: spectrum, only_points: false },
     Place { pointer: "/detector/responsivity", read: responsivity, only_points: false },
     Place { pointer: "/meter/typical_curve", read: responsivity, only_points: true },
     Place { pointer: "/meter/certificate", read: certificate, only_points: false },
@@ -78,6 +79,14 @@ fn responsivity(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
     let points = table.points.iter();
     let rows = points.map(|point| row(&[("wavelength_nm", point.wavelength_nm), ("a_per_w", point.a_per_w)]));
     Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
+}
+
+fn spectrum(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
+    let table = read_spectrum(text, choices)?;
+    let points = table.points.iter();
+    let rows = points.map(|point| row(&[("wavelength_nm", point.wavelength_nm), ("value", point.value)]));
+    let entries = vec![("unit", Tree::from(table.unit.word())), ("points", Tree::List(rows.collect()))];
+    Ok(Pasted { entries, reading: table.reading })
 }
 
 fn certificate(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
@@ -141,7 +150,11 @@ pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
     };
     let meter = bench.meter.as_ref();
     let detector = bench.detector.as_ref().and_then(|detector| detector.responsivity.as_ref());
+    let spectrum = bench.source.as_ref().and_then(|source| source.spectrum.as_ref());
     match (pointer, detector) {
+        ("/source/spectrum", _) => spectrum.map_or_else(String::new, |spectrum| {
+            write_spectrum_points(spectrum.unit, &spectrum.points, mark)
+        }),
         ("/detector/responsivity", Some(Responsivity::Table { points })) => {
             write_responsivity_points(points, mark)
         }

@@ -61,6 +61,12 @@ pub fn read_responsivity(text: &str, choices: JsValue) -> Result<JsValue, JsValu
 
 /// `{ value }` or `{ faults }`.
 #[wasm_bindgen]
+pub fn read_spectrum(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {
+    outcome("value", tree(choices, "/choices").and_then(|choices| door::read_spectrum(text, &choices)))
+}
+
+/// `{ value }` or `{ faults }`.
+#[wasm_bindgen]
 pub fn read_bench(text: &str) -> Result<JsValue, JsValue> {
     outcome("value", door::read_bench(text))
 }

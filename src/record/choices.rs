@@ -110,8 +110,8 @@ fn columns(tree: &Tree, pointer: &str, faults: &mut Faults) -> Vec<ColumnChoice>
         if let Some(role) = role
             && columns.iter().filter_map(|other| other.role).any(|other| clash(other, role))
         {
-            let sentence = "A table has one column of wavelengths, one of values and one of uncertainties; \
-                            a second one was given.";
+            let sentence = "A table has one column of each kind: wavelengths, values, uncertainties and so on; a \
+                            second one was given.";
             faults.push(Fault::new(&format!("{here}/role"), Code::Conflict, role.name().into(), sentence));
         }
         columns.push(ColumnChoice { index, role, unit });

@@ -289,6 +289,9 @@ fn words(role: Role) -> &'static str {
         Role::CorrectionFactor => "correction factor",
         Role::Deviation => "deviation",
         Role::Expanded => "uncertainty",
-        Role::Ignored => "column",
+        Role::SpectralPower => "power per nm",
+        Role::Power => "power",
+        Role::Time => "time",
+        Role::Detector | Role::Ignored => "column",
     }
 }

@@ -14,24 +14,35 @@ pub(super) enum Decision {
 
 /// Decides from the cells of the columns that are read.
 pub(super) fn decided(rows: &[Row], columns: &[usize], delimiter: Delimiter, has_header: bool) -> Decision {
+    let cells = rows
+        .iter()
+        .filter(|row| !row.is_remark())
+        .flat_map(|row| columns.iter().map(|&index| row.cell(index)));
+    decided_by(cells, delimiter, has_header, has_three_cells(rows))
+}
+
+/// Decides from the texts of cells.
+pub(super) fn decided_by<'c>(
+    cells: impl Iterator<Item = &'c str>,
+    delimiter: Delimiter,
+    has_header: bool,
+    has_three_cells: bool,
+) -> Decision {
     let (mut points, mut commas) = (0_usize, 0_usize);
     let (mut either_point, mut either_comma) = (0_usize, None);
-    for row in rows.iter().filter(|row| !row.is_remark()) {
-        for &index in columns {
-            let text = row.cell(index);
-            match Cell::cut(text).map(|cell| cell.marks()) {
-                Some(Marks::Point) => points += 1,
-                Some(Marks::Comma) => commas += 1,
-                Some(Marks::EitherPoint) => either_point += 1,
-                Some(Marks::EitherComma) => either_comma = either_comma.or(Some(text)),
-                Some(Marks::Silent) | None => {}
-            }
+    for text in cells {
+        match Cell::cut(text).map(|cell| cell.marks()) {
+            Some(Marks::Point) => points += 1,
+            Some(Marks::Comma) => commas += 1,
+            Some(Marks::EitherPoint) => either_point += 1,
+            Some(Marks::EitherComma) => either_comma = either_comma.or(Some(text)),
+            Some(Marks::Silent) | None => {}
         }
     }
     match (points, commas, either_comma) {
         (0, 0, Some(text)) => Decision::Open(both_readings(text)),
         (0, 0, None)
-            if delimiter == Delimiter::Comma && either_point == 0 && !has_header && has_three_cells(rows) =>
+            if delimiter == Delimiter::Comma && either_point == 0 && !has_header && has_three_cells =>
         {
             Decision::Open(
                 "It cannot be told whether the commas part cells or stand before the tenths, for no number \

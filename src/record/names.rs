@@ -64,6 +64,14 @@ named! {
         Deviation = "deviation",
         /// The expanded uncertainty U.
         Expanded = "expanded",
+        /// The power per nm of a spectrum.
+        SpectralPower = "spectral_power",
+        /// Which of two detectors the row is of.
+        Detector = "detector",
+        /// The power that a detector showed.
+        Power = "power",
+        /// When.
+        Time = "time",
         /// Nothing that is read.
         Ignored = "ignored",
     }
@@ -86,6 +94,30 @@ named! {
         Percent = "%",
         /// Decibels of optical power.
         Decibel = "dB",
+        /// Watts.
+        Watt = "W",
+        /// Milliwatts.
+        Milliwatt = "mW",
+        /// Microwatts.
+        Microwatt = "µW",
+        /// Nanowatts.
+        Nanowatt = "nW",
+        /// Picowatts.
+        Picowatt = "pW",
+        /// Decibels over 1 mW.
+        Dbm = "dBm",
+        /// Watts per nanometre.
+        WattPerNm = "W/nm",
+        /// Milliwatts per nanometre.
+        MilliwattPerNm = "mW/nm",
+        /// Microwatts per nanometre.
+        MicrowattPerNm = "µW/nm",
+        /// Nanowatts per nanometre.
+        NanowattPerNm = "nW/nm",
+        /// Decibels over 1 mW per nanometre.
+        DbmPerNm = "dBm/nm",
+        /// Seconds.
+        Second = "s",
     }
 }
 
@@ -127,31 +159,67 @@ impl Role {
             Role::Expanded => {
                 &[Unit::Percent, Unit::Decibel, Unit::AmperePerWatt, Unit::MilliamperePerWatt, Unit::One]
             }
-            Role::Ignored => &[],
+            Role::SpectralPower => &[
+                Unit::WattPerNm,
+                Unit::MilliwattPerNm,
+                Unit::MicrowattPerNm,
+                Unit::NanowattPerNm,
+                Unit::DbmPerNm,
+                Unit::Watt,
+                Unit::Milliwatt,
+                Unit::Microwatt,
+                Unit::Nanowatt,
+                Unit::Picowatt,
+                Unit::Dbm,
+                Unit::Decibel,
+                Unit::One,
+                Unit::Percent,
+            ],
+            Role::Power => {
+                &[Unit::Watt, Unit::Milliwatt, Unit::Microwatt, Unit::Nanowatt, Unit::Picowatt, Unit::Dbm]
+            }
+            Role::Time => &[Unit::Second],
+            Role::Detector | Role::Ignored => &[],
         }
     }
 }
 
 impl Unit {
-    /// Recognises a unit as it is written in tables; `None` for anything else.
-    pub(super) fn written(text: &str) -> Option<Unit> {
-        let text = text.trim();
-        // The longest spelling below has seven characters; a long cell need not be copied to be refused.
-        if text.is_empty() || text.len() > 16 {
-            return None;
+    /// Recognises a unit of power, of power per nm or of time as it is written in tables; `None` for anything else.
+    pub(super) fn written_of_power(text: &str) -> Option<Unit> {
+        Some(match plain(text)?.as_str() {
+            "W" => Unit::Watt,
+            "mW" => Unit::Milliwatt,
+            "uW" => Unit::Microwatt,
+            "nW" => Unit::Nanowatt,
+            "pW" => Unit::Picowatt,
+            "dBm" | "dbm" | "DBM" | "dBmW" => Unit::Dbm,
+            "W/nm" | "W.nm-1" => Unit::WattPerNm,
+            "mW/nm" | "mW.nm-1" => Unit::MilliwattPerNm,
+            "uW/nm" | "uW.nm-1" => Unit::MicrowattPerNm,
+            "nW/nm" | "nW.nm-1" => Unit::NanowattPerNm,
+            "dBm/nm" | "dbm/nm" => Unit::DbmPerNm,
+            "s" | "sec" => Unit::Second,
+            _ => return None,
+        })
+    }
+
+    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s; 0 for levels.
+    pub(super) fn power_of_ten(self) -> i32 {
+        match self {
+            Unit::Micrometre => 3,
+            Unit::MilliamperePerWatt | Unit::Milliwatt | Unit::MilliwattPerNm => -3,
+            Unit::Microwatt | Unit::MicrowattPerNm => -6,
+            Unit::Nanowatt | Unit::NanowattPerNm => -9,
+            Unit::Picowatt => -12,
+            Unit::Percent => -2,
+            _ => 0,
         }
-        let plain: String = text
-            .chars()
-            .filter(|c| !c.is_whitespace() && *c != '^')
-            .map(|c| match c {
-                'μ' | 'µ' => 'u',
-                '·' | '*' | '⋅' => '.',
-                '⁻' | '−' => '-',
-                '¹' => '1',
-                other => other,
-            })
-            .collect();
-        Some(match plain.as_str() {
+    }
+
+    /// Recognises a unit as it is written in tables of wavelengths; `None` for anything else.
+    pub(super) fn written(text: &str) -> Option<Unit> {
+        Some(match plain(text)?.as_str() {
             "nm" | "NM" => Unit::Nanometre,
             "um" | "micron" | "microns" => Unit::Micrometre,
             "A/W" | "a/w" | "A.W-1" | "AW-1" | "mA/mW" | "uA/uW" => Unit::AmperePerWatt,
@@ -162,4 +230,21 @@ impl Unit {
             _ => return None,
         })
     }
+}
+
+/// A unit with one spelling for each of its signs.
+fn plain(text: &str) -> Option<String> {
+    let text = text.trim();
+    // The longest spelling has seven characters; a long cell need not be copied to be refused.
+    if text.is_empty() || text.len() > 16 {
+        return None;
+    }
+    let one_spelling = |c| match c {
+        'μ' | 'µ' => 'u',
+        '·' | '*' | '⋅' => '.',
+        '⁻' | '−' => '-',
+        '¹' => '1',
+        other => other,
+    };
+    Some(text.chars().filter(|c| !c.is_whitespace() && *c != '^').map(one_spelling).collect())
 }

@@ -68,6 +68,11 @@ pub(super) fn named_delimiter(text: &str) -> Option<Delimiter> {
 /// Finds the delimiter under which most rows hold two numbers and the fewest other cells. On equal terms the
 /// one that rarely stands inside a number or a word goes first.
 pub(super) fn sniffed_delimiter(text: &str) -> Delimiter {
+    sniffed_by(text, is_number)
+}
+
+/// As [`sniffed_delimiter`], with another idea of what a number is.
+pub(super) fn sniffed_by(text: &str, is_number: fn(&str) -> bool) -> Delimiter {
     // Enough to be past any preamble; the rest of a long table looks like its beginning.
     const LINES: usize = 400;
     let end = text.match_indices('\n').nth(LINES).map_or(text.len(), |(at, _)| at);
@@ -75,7 +80,7 @@ pub(super) fn sniffed_delimiter(text: &str) -> Delimiter {
     let merit = |delimiter: Delimiter| {
         let (mut with_numbers, mut others) = (0, 0);
         for row in rows(sample, delimiter).0.iter().filter(|row| !row.is_remark()) {
-            let numbers = row.numbers();
+            let numbers = row.cells().filter(|cell| is_number(cell)).count();
             if numbers >= 2 {
                 with_numbers += 1;
                 others += row.cells().filter(|cell| !cell.is_empty()).count() - numbers;

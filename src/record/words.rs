@@ -37,7 +37,7 @@ const EXPANDED: &[&str] =
 const DEVIATION: &[&str] = &["deviation", "error", "abweichung", "fehler", "ecart", "erreur", "desviacion"];
 const CORRECTION: &[&str] = &["correct", "korrekt", "correc", "faktor", "factor", "facteur"];
 const RESPONSIVITY: &[&str] = &["respons", "sensitivity", "sensibil", "empfindlich", "reponse", "respuesta"];
-const WAVELENGTH: &[&str] = &[
+pub(super) const WAVELENGTH: &[&str] = &[
     "wavelength",
     "wave length",
     "wellenlange",
@@ -168,7 +168,7 @@ fn role(name: &str, unit: Option<Unit>) -> Option<Role> {
             Unit::Nanometre | Unit::Micrometre => Role::Wavelength,
             Unit::AmperePerWatt | Unit::MilliamperePerWatt => Role::Responsivity,
             Unit::Percent | Unit::Decibel => Role::Expanded,
-            Unit::One => return None,
+            _ => return None,
         },
         "U" | "u" | "U95" | "U_95" | "U_rel" | "Urel" | "unc" | "unc." | "Unc" | "Unc." => Role::Expanded,
         "R" | "S" | "s" | "Resp" | "Resp." | "resp" | "resp." => Role::Responsivity,
@@ -187,12 +187,12 @@ fn role(name: &str, unit: Option<Unit>) -> Option<Role> {
     (role == Role::Wavelength || !in_wavelength).then_some(role)
 }
 
-fn has(plain: &str, words: &[&str]) -> bool {
+pub(super) fn has(plain: &str, words: &[&str]) -> bool {
     words.iter().any(|word| plain.contains(word))
 }
 
 /// Lower case without accents.
-fn folded(text: &str) -> String {
+pub(super) fn folded(text: &str) -> String {
     text.chars()
         .flat_map(char::to_lowercase)
         .map(|c| match c {

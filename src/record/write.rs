@@ -4,6 +4,7 @@ use super::cell::{Cell, Marks};
 use super::names::DecimalMark;
 use crate::bench::meter::{CertificateForm, CertificatePoint};
 use crate::bench::points::ResponsivityPoint;
+use crate::bench::spectrum::{SpectrumPoint, SpectrumUnit};
 
 /// Writes a certificate's points as tab-separated text with a header, to be read back bit by bit by
 /// [`read_certificate`](super::read_certificate).
@@ -44,6 +45,20 @@ pub fn write_responsivity_points(points: &[ResponsivityPoint], mark: DecimalMark
     let mut text = "Wavelength / nm\tResponsivity / (A/W)\n".to_owned();
     for point in points {
         text += &format!("{}\t{}\n", digits(point.wavelength_nm, mark), digits(point.a_per_w, mark));
+    }
+    text
+}
+
+/// Writes a spectrum as tab-separated text with a header, to be read back bit by bit by
+/// [`read_spectrum`](super::read_spectrum).
+pub fn write_spectrum_points(unit: SpectrumUnit, points: &[SpectrumPoint], mark: DecimalMark) -> String {
+    let power = match unit {
+        SpectrumUnit::WPerNm => "Power per nm / (W/nm)",
+        SpectrumUnit::DbmPerNm => "Power per nm / (dBm/nm)",
+    };
+    let mut text = format!("Wavelength / nm\t{power}\n");
+    for point in points {
+        text += &format!("{}\t{}\n", digits(point.wavelength_nm, mark), digits(point.value, mark));
     }
     text
 }
