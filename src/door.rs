@@ -9,6 +9,7 @@ use crate::explore::sweep::{Sweep, sweep};
 use crate::fault::{Allowed, Code, Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
+use crate::questions::transfer::{self, Transfer};
 use crate::questions::{Answer, QUESTIONS, Question};
 use crate::record::{self, CertificateTable, Choices, Reading, ResponsivityTable, SpectrumTable};
 use crate::tree::Tree;
@@ -158,6 +159,12 @@ pub fn read_responsivity(text: &str, choices: &Tree) -> Result<ResponsivityTable
 /// Reads a spectrum from pasted cells or a file's text.
 pub fn read_spectrum(text: &str, choices: &Tree) -> Result<SpectrumTable, Faults> {
     record::read_spectrum(text, &Choices::from_tree(choices, "/choices")?)
+}
+
+/// Calibrates a detector by comparison with the reference on the bench: the readings of both in turn, as pasted cells
+/// or a file's text.
+pub fn transfer_calibration(text: &str, bench: &Tree, choices: &Tree) -> Result<Transfer, Faults> {
+    transfer::transfer_calibration(text, &Bench::from_tree(bench)?, choices)
 }
 
 /// Reads the text of a bench file.

@@ -67,6 +67,14 @@ pub fn read_spectrum(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {
 
 /// `{ value }` or `{ faults }`.
 #[wasm_bindgen]
+pub fn transfer_calibration(text: &str, bench: JsValue, choices: JsValue) -> Result<JsValue, JsValue> {
+    let calibrated = tree(bench, "")
+        .and_then(|bench| door::transfer_calibration(text, &bench, &tree(choices, "/choices")?));
+    outcome("value", calibrated)
+}
+
+/// `{ value }` or `{ faults }`.
+#[wasm_bindgen]
 pub fn read_bench(text: &str) -> Result<JsValue, JsValue> {
     outcome("value", door::read_bench(text))
 }

@@ -6,6 +6,7 @@ pub mod reading;
 pub mod sensitivity;
 pub mod shown;
 pub mod spectral;
+pub mod transfer;
 
 use crate::bench::Bench;
 use crate::fault::Faults;

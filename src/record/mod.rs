@@ -21,6 +21,8 @@ mod rows;
 mod sheet;
 mod spectrum;
 mod table;
+mod time;
+mod transfer;
 mod words;
 mod write;
 
@@ -30,4 +32,7 @@ pub use names::{DecimalMark, Delimiter, Role, Unit};
 pub use reading::{BadRow, Column, Reading};
 pub use responsivity::{ResponsivityTable, read_responsivity};
 pub use spectrum::{SpectrumTable, read_spectrum};
-pub use write::{write_certificate_points, write_responsivity_points, write_spectrum_points};
+pub use transfer::{Comparison, ReadBlock, read_comparison};
+pub use write::{
+    number_text, remark, write_certificate_points, write_responsivity_points, write_spectrum_points,
+};

@@ -2,6 +2,7 @@
 
 use super::cell::{Cell, Marks};
 use super::names::DecimalMark;
+use super::words::coverage_factor;
 use crate::bench::meter::{CertificateForm, CertificatePoint};
 use crate::bench::points::ResponsivityPoint;
 use crate::bench::spectrum::{SpectrumPoint, SpectrumUnit};
@@ -61,6 +62,21 @@ pub fn write_spectrum_points(unit: SpectrumUnit, points: &[SpectrumPoint], mark:
         text += &format!("{}\t{}\n", digits(point.wavelength_nm, mark), digits(point.value, mark));
     }
     text
+}
+
+/// A line of remarks above a table. Where a reader would take a coverage factor from it, points stand between its words:
+/// the table's own header states k.
+pub fn remark(line: &str) -> String {
+    let plain = line.replace('"', "'").split_whitespace().collect::<Vec<_>>().join(" ");
+    match coverage_factor(&plain) {
+        Some(_) => format!("# {}\n", plain.replace([' ', '=', ':', ';', ','], "·")),
+        None => format!("# {plain}\n"),
+    }
+}
+
+/// A number as the tables above write it.
+pub fn number_text(number: f64, mark: DecimalMark) -> String {
+    digits(number, mark)
 }
 
 /// The fewest digits that give back the same number. A zero is added where a comma before three digits could

@@ -1,3 +1,4 @@
 //! Statements about chance.
 
 pub mod normal;
+pub mod transfer;

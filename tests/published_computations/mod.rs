@@ -4,10 +4,11 @@ mod door;
 mod light;
 mod mathematics;
 mod receiver;
+mod transfer;
 
 use crate::support::cases::Computation;
 
 /// Everything that a case may ask for.
 pub fn all() -> Vec<(&'static str, Computation)> {
-    [door::ALL, light::ALL, mathematics::ALL, receiver::ALL].concat()
+    [door::ALL, light::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
 }

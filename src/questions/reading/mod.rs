@@ -1,6 +1,6 @@
 //! What is this reading worth?
 
-mod certified;
+pub(super) mod certified;
 mod light;
 mod over_spectrum;
 mod shown;

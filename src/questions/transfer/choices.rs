@@ -1,0 +1,173 @@
+//! What a person says about a calibration beside its readings.
+
+use crate::bench::field::Limits;
+use crate::bench::reader::Reader;
+use crate::fault::{Code, Fault, Faults};
+use crate::quantity::kind;
+use crate::record::Choices;
+use crate::statistics::transfer::Uncertain;
+use crate::tree::Tree;
+use serde::Serialize;
+
+/// Everything that the readings do not say.
+#[derive(Debug, Clone, PartialEq)]
+pub struct TransferChoices {
+    /// How the table is to be read.
+    pub table: Choices,
+    /// The label of the reference in the table.
+    pub reference: Option<String>,
+    /// When the readings were taken, `2026-11-30`.
+    pub date: String,
+    /// The number of the reference's certificate.
+    pub reference_certificate: String,
+    /// What the reference is.
+    pub reference_device: String,
+    /// What the detector under test is.
+    pub test_device: String,
+    /// What U is to cover.
+    pub coverage_probability: f64,
+    /// Degrees of freedom of the reference's uncertainty; nothing means infinite.
+    pub reference_degrees_of_freedom: Option<f64>,
+    /// Further standard uncertainties.
+    pub contributions: Vec<Contribution>,
+}
+
+/// A further standard uncertainty of every correction factor.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Contribution {
+    /// What contributes: "connectors".
+    pub name: String,
+    /// Standard uncertainty, per cent of the factor.
+    pub standard_percent: f64,
+    /// Its degrees of freedom; nothing means infinite.
+    pub degrees_of_freedom: Option<f64>,
+}
+
+impl Contribution {
+    /// Relative, not per cent.
+    pub(super) fn uncertain(&self) -> Uncertain {
+        let degrees_of_freedom = self.degrees_of_freedom.unwrap_or(f64::INFINITY);
+        Uncertain { standard: self.standard_percent / 100.0, degrees_of_freedom }
+    }
+}
+
+/// The coverage probability where none is chosen.
+const USUAL_PROBABILITY: f64 = 0.95;
+
+const KEYS: [&str; 9] = [
+    "table",
+    "reference",
+    "date",
+    "reference_certificate",
+    "reference_device",
+    "test_device",
+    "coverage_probability",
+    "reference_degrees_of_freedom",
+    "contributions",
+];
+
+impl TransferChoices {
+    /// Reads choices; what is wrong or missing comes beside what is right.
+    pub fn from_tree(tree: &Tree, pointer: &str) -> (TransferChoices, Faults) {
+        let mut reader = Reader::strict();
+        let map = reader.part(Some(tree), pointer, &KEYS).unwrap_or(&Tree::Null);
+        let table = map.get("table").unwrap_or(&Tree::Null);
+        let table = Choices::from_tree(table, &format!("{pointer}/table"));
+        let table = table.map_err(|found| reader.faults.extend(found)).unwrap_or_default();
+        let mut text = |key: &str| reader.text(map.get(key), &format!("{pointer}/{key}")).trim().to_owned();
+        let (reference, date) = (text("reference"), text("date"));
+        let (certificate, device, test) =
+            (text("reference_certificate"), text("reference_device"), text("test_device"));
+        let mut number = |key: &str, name: &str, limits: Limits| {
+            let at = format!("{pointer}/{key}");
+            reader.of_kind(map.get(key), &at, name, &kind::NUMBER, &limits).map(|number| number.value)
+        };
+        let probability =
+            number("coverage_probability", "the coverage probability", Limits::between(0.5, 0.9999));
+        let degrees = number(
+            "reference_degrees_of_freedom",
+            "the degrees of freedom of the reference",
+            Limits::between(1.0, 1e9),
+        );
+        let contributions =
+            contributions(map.get("contributions"), &format!("{pointer}/contributions"), &mut reader);
+        if date.is_empty() {
+            reader.missing(&format!("{pointer}/date"), "Needed: the date of the readings, as 2026-11-30.");
+        } else if !is_date(&date) {
+            let sentence = format!("The date must be written as 2026-11-30; “{date}” was given.");
+            reader.faults.push(Fault::new(
+                &format!("{pointer}/date"),
+                Code::Unreadable,
+                date.as_str().into(),
+                &sentence,
+            ));
+        }
+        if certificate.is_empty() {
+            let sentence = "Needed: the number of the reference's certificate, on which the new one rests.";
+            reader.missing(&format!("{pointer}/reference_certificate"), sentence);
+        }
+        let choices = TransferChoices {
+            table,
+            reference: Some(reference).filter(|reference| !reference.is_empty()),
+            date,
+            reference_certificate: certificate,
+            reference_device: device,
+            test_device: test,
+            coverage_probability: probability.unwrap_or(USUAL_PROBABILITY),
+            reference_degrees_of_freedom: degrees,
+            contributions,
+        };
+        (choices, reader.faults)
+    }
+}
+
+fn contributions(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Vec<Contribution> {
+    let items = reader.list(tree, pointer).unwrap_or_default();
+    let mut found = Vec::new();
+    for (index, item) in items.iter().enumerate() {
+        let at = format!("{pointer}/{index}");
+        let keys = ["name", "standard_percent", "degrees_of_freedom"];
+        let Some(map) = reader.part(Some(item), &at, &keys) else { continue };
+        let name = reader.text(map.get("name"), &format!("{at}/name")).trim().to_owned();
+        if name.is_empty() {
+            reader.missing(&format!("{at}/name"), "Each contribution needs a name.");
+        }
+        let mut number = |key: &str, what: &str, limits: Limits| {
+            let place = format!("{at}/{key}");
+            reader.of_kind(map.get(key), &place, what, &kind::NUMBER, &limits).map(|number| number.value)
+        };
+        let standard = number("standard_percent", "the standard uncertainty", Limits::between(0.0, 100.0));
+        let degrees = number("degrees_of_freedom", "the degrees of freedom", Limits::between(1.0, 1e9));
+        match standard {
+            Some(standard_percent) => {
+                found.push(Contribution { name, standard_percent, degrees_of_freedom: degrees });
+            }
+            None if map.get("standard_percent").is_none_or(Tree::is_null) => {
+                let sentence = "Each contribution needs its standard uncertainty in per cent.";
+                reader.missing(&format!("{at}/standard_percent"), sentence);
+            }
+            None => {}
+        }
+    }
+    found
+}
+
+/// Whether a text is a date as ISO 8601 and XML Schema write it, of a day that there is.
+pub fn is_date(text: &str) -> bool {
+    let bytes = text.as_bytes();
+    let shape = bytes.len() == 10
+        && bytes.iter().enumerate().all(|(at, byte)| match at {
+            4 | 7 => *byte == b'-',
+            _ => byte.is_ascii_digit(),
+        });
+    let number = |from, to| text.get(from..to).and_then(|part: &str| part.parse::<u32>().ok()).unwrap_or(0);
+    let (year, month, day) = (number(0, 4), number(5, 7), number(8, 10));
+    let leap = year % 4 == 0 && (year % 100 != 0 || year % 400 == 0);
+    let days = match month {
+        2 => 28 + u32::from(leap),
+        4 | 6 | 9 | 11 => 30,
+        1..=12 => 31,
+        _ => 0,
+    };
+    shape && year > 0 && (1..=days).contains(&day)
+}
