@@ -11,7 +11,7 @@ use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
 use crate::questions::transfer::{self, Transfer};
 use crate::questions::{Answer, QUESTIONS, Question};
-use crate::record::{self, CertificateTable, Choices, Reading, ResponsivityTable, SpectrumTable};
+use crate::record::{self, CertificateTable, Choices, DccReading, Reading, ResponsivityTable, SpectrumTable};
 use crate::tree::Tree;
 use crate::typed;
 use serde::Serialize;
@@ -165,6 +165,20 @@ pub fn read_spectrum(text: &str, choices: &Tree) -> Result<SpectrumTable, Faults
 /// or a file's text.
 pub fn transfer_calibration(text: &str, bench: &Tree, choices: &Tree) -> Result<Transfer, Faults> {
     transfer::transfer_calibration(text, &Bench::from_tree(bench)?, choices)
+}
+
+/// Reads a digital calibration certificate from the text of its file.
+pub fn read_dcc(text: &str, choices: &Tree) -> Result<DccReading, Faults> {
+    record::read_dcc(text, choices)
+}
+
+/// Writes the certificate of a bench's meter as a digital calibration certificate.
+pub fn write_dcc(bench: &Tree, administration: &Tree) -> Result<String, Faults> {
+    let bench = Bench::from_tree(bench)?;
+    match bench.meter.as_ref().and_then(|meter| meter.certificate.as_ref()) {
+        Some(certificate) => record::write_dcc(certificate, administration),
+        None => Err(vec![Fault::missing("/meter/certificate", "A certificate is needed to be written.")]),
+    }
 }
 
 /// Reads the text of a bench file.

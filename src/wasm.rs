@@ -75,6 +75,20 @@ pub fn transfer_calibration(text: &str, bench: JsValue, choices: JsValue) -> Res
 
 /// `{ value }` or `{ faults }`.
 #[wasm_bindgen]
+pub fn read_dcc(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {
+    outcome("value", tree(choices, "/choices").and_then(|choices| door::read_dcc(text, &choices)))
+}
+
+/// `{ value }`, the text of a file, or `{ faults }`.
+#[wasm_bindgen]
+pub fn write_dcc(bench: JsValue, administration: JsValue) -> Result<JsValue, JsValue> {
+    let written =
+        tree(bench, "").and_then(|bench| door::write_dcc(&bench, &tree(administration, "/administration")?));
+    outcome("value", written)
+}
+
+/// `{ value }` or `{ faults }`.
+#[wasm_bindgen]
 pub fn read_bench(text: &str) -> Result<JsValue, JsValue> {
     outcome("value", door::read_bench(text))
 }

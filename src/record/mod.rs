@@ -11,6 +11,8 @@ mod certificate;
 mod choices;
 mod columns;
 mod coverage;
+mod date;
+mod dcc;
 mod layout;
 mod mark;
 mod names;
@@ -28,6 +30,8 @@ mod write;
 
 pub use certificate::{CertificateTable, read_certificate};
 pub use choices::{Choices, ColumnChoice};
+pub use date::is_date;
+pub use dcc::{BadPoint, DccCertificate, DccQuantity, DccReading, QuantityKind, Taken, read_dcc, write_dcc};
 pub use names::{DecimalMark, Delimiter, Role, Unit};
 pub use reading::{BadRow, Column, Reading};
 pub use responsivity::{ResponsivityTable, read_responsivity};
