@@ -1,7 +1,7 @@
 //! What is uncertain: inputs, how they are spread, and how they hang together.
 
-use super::shape::Shape;
 use crate::numeric::cholesky::lower_triangle;
+use crate::statistics::shape::Shape;
 
 /// A quantity of which only the deviation from its estimate is unknown; that deviation has mean 0.
 #[derive(Debug, Clone, Copy, PartialEq)]

@@ -3,8 +3,8 @@
 use super::gum::Model;
 use super::input::{Correlations, Input};
 use super::outcome::{Outcome, outcome};
-use super::shape::Shape;
 use crate::statistics::normal::{standard_normal, upper_tail};
+use crate::statistics::shape::Shape;
 use rand_core::{Rng, SeedableRng};
 use rand_xoshiro::Xoshiro256PlusPlus;
 

@@ -1,6 +1,6 @@
 //! How the values of an uncertain input are spread.
 
-use crate::statistics::normal::standard_normal;
+use super::normal::standard_normal;
 use core::f64::consts::PI;
 use serde::Serialize;
 
