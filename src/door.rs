@@ -16,8 +16,10 @@ use crate::record::{self, CertificateTable, Choices, DccReading, Reading, Respon
 use crate::tree::Tree;
 use crate::typed;
 use crate::uncertainty::asked::{self as uncertainty, Begun, Uncertain};
+use crate::uncertainty::doubts::fill_means;
 use crate::uncertainty::shown::show;
 use crate::uncertainty::trials::Trials;
+use crate::uncertainty::usual::{USUAL, UsualDoubt};
 use serde::Serialize;
 use std::collections::BTreeMap;
 
@@ -47,6 +49,8 @@ pub struct QuestionRow {
     pub asks: &'static str,
     /// The pointers that it reads; a part stands for all of its fields.
     pub fields: &'static [&'static str],
+    /// The numbers whose uncertainty is offered: name, and what it is called.
+    pub uncertain: &'static [(&'static str, &'static str)],
 }
 
 /// All questions.
@@ -55,6 +59,7 @@ pub fn questions() -> Vec<QuestionRow> {
         name: question.name,
         asks: question.asks,
         fields: question.fields,
+        uncertain: question.uncertain,
     };
     QUESTIONS.iter().map(row).collect()
 }
@@ -62,6 +67,11 @@ pub fn questions() -> Vec<QuestionRow> {
 /// All numbers of a bench.
 pub fn field_rows() -> Vec<FieldRow> {
     fields().map(FieldRow::from).collect()
+}
+
+/// The doubts that are usual, to be taken and changed.
+pub fn usual_doubts() -> &'static [UsualDoubt] {
+    USUAL
 }
 
 /// Asks a question of a bench. Doubts may stand among the options or, where those have none, on the bench itself. Trials
@@ -96,6 +106,9 @@ impl Run {
         };
         if let Some(stated) = &mut bench.uncertainty {
             stated.monte_carlo = stated.monte_carlo.or(Some(MonteCarlo::USUAL)).filter(|_| run);
+        }
+        if let Some(stated) = stated.as_ref().or(bench.uncertainty.clone().as_ref()) {
+            fill_means(stated, &mut bench);
         }
         let answer = (question.ask)(&bench)?;
         let begun = match (&stated, &bench.uncertainty) {
@@ -195,7 +208,10 @@ pub struct Followed {
 /// Asks a question of a bench as it was typed. What is wrong in a place that the question does not read is
 /// named, but does not keep it from answering.
 pub fn follow(question: &str, typed: &Tree, decimal_mark: &str) -> Followed {
-    let typed::Understanding { bench, understood, tables, mut faults } = understand(typed, decimal_mark);
+    let typed::Understanding { mut bench, understood, tables, mut faults } = understand(typed, decimal_mark);
+    if let Some(stated) = bench.uncertainty.clone() {
+        fill_means(&stated, &mut bench);
+    }
     let found = find_question(question);
     let concerns = |fault: &Fault| {
         let fields = found.as_ref().map_or(&[""][..], |question| question.fields);
@@ -313,6 +329,12 @@ pub fn write_number(pointer: &str, value: f64, decimal_mark: &str) -> String {
 pub fn write_table(pointer: &str, bench: &Tree, decimal_mark: &str) -> Result<String, Faults> {
     let bench = Bench::from_tree(bench)?;
     Ok(typed::write_table(pointer, &bench, mark(decimal_mark)?))
+}
+
+/// The doubts of a bench as they would be typed; nothing where it has none.
+pub fn write_doubts(bench: &Tree, decimal_mark: &str) -> Result<Tree, Faults> {
+    let bench = Bench::from_tree(bench)?;
+    Ok(typed::write_doubts(&bench, mark(decimal_mark)?))
 }
 
 /// The demonstration bench: the invented observatory Ansa Ridge.

@@ -143,6 +143,18 @@ pub fn write_table(pointer: &str, bench: JsValue, decimal_mark: &str) -> Result<
     outcome("value", tree(bench, "").and_then(|bench| door::write_table(pointer, &bench, decimal_mark)))
 }
 
+/// The doubts of a bench as they would be typed: `{ value }` or `{ faults }`.
+#[wasm_bindgen]
+pub fn write_doubts(bench: JsValue, decimal_mark: &str) -> Result<JsValue, JsValue> {
+    outcome("value", tree(bench, "").and_then(|bench| door::write_doubts(&bench, decimal_mark)))
+}
+
+/// The doubts that are usual, to be taken and changed.
+#[wasm_bindgen]
+pub fn usual_doubts() -> Result<JsValue, JsValue> {
+    out(&door::usual_doubts())
+}
+
 /// The demonstration bench.
 #[wasm_bindgen]
 pub fn demo() -> Result<JsValue, JsValue> {

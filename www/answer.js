@@ -40,6 +40,7 @@ function headline(shown, mark) {
     "div",
     { class: "headline" },
     h("p", { class: "headline-text" }, h("span", { class: "headline-figure" }, figure), " ", marked(shown.headline.sentence, mark)),
+    shown.headline.uncertainty && h("p", { class: "headline-doubt" }, marked(shown.headline.uncertainty, mark)),
     shown.cautions.length > 0 && h("p", { class: "caution cautions-named" }, "Before you touch anything: ", h("a", { href: "#cautions", click: toCautions }, shown.cautions.map(({ about }) => about.toLowerCase()).join(", "))),
     h(
       "div",
@@ -171,6 +172,7 @@ function notes({ notes: list }, mark) {
 export function answerText(shown, mark) {
   const lines = [
     `${shown.headline.figure} ${shown.headline.sentence}`,
+    ...(shown.headline.uncertainty ? [shown.headline.uncertainty] : []),
     ...shown.facts.map(({ name, figure }) => `${name}: ${figure}`),
     ...shown.budgets.flatMap((budget) => [
       `${budget.title}: ${budget.total}`,

@@ -86,10 +86,12 @@ export const core = {
   ask: (question, bench, options) => guarded((door) => door.ask(question, bench, options), { faults: failed() }),
   understand: (typed, mark) => guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: failed() }),
   follow: (question, typed, mark) =>
-    guarded((door) => door.follow(question, typed, mark), { understood: {}, tables: {}, faults: failed(), blocking: failed(), answer: null }),
+    guarded((door) => door.follow(question, typed, mark), { understood: {}, tables: {}, faults: failed(), blocking: failed(), answer: null, uncertainty: null }),
   read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: failed() }),
   read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: failed() }),
   read_bench: (text) => guarded((door) => door.read_bench(text), { faults: failed() }),
   write_number: (pointer, value, mark) => guarded((door) => door.write_number(pointer, value, mark), String(value)),
+  write_doubts: (bench, mark) => guarded((door) => door.write_doubts(bench, mark), { faults: failed() }),
+  usual_doubts: () => guarded((door) => door.usual_doubts(), []),
   write_table: (pointer, bench, mark) => guarded((door) => door.write_table(pointer, bench, mark), { faults: failed() }),
 };

@@ -2,7 +2,8 @@
  * What crosses the door, in types. There is no code here: the core computes, the page shows.
  *
  * @typedef {{ pointer: string, code: string, given?: unknown, allowed?: unknown, sentence: string }} Fault
- * @typedef {{ name: string, asks: string, fields: string[] }} Question
+ * @typedef {{ name: string, asks: string, fields: string[], uncertain: [name: string, says: string][] }} Question
+ * @typedef {{ question: string, name: string, pointer: string, stated: string, amount: string, distribution: string, times: string, note: string }} UsualDoubt
  * @typedef {{ pointer: string, name: string, unit: string, allowed?: unknown, usual: string }} Field
  * @typedef {"auto" | "point" | "comma"} Mark
  *
@@ -15,7 +16,7 @@
  * @typedef {{ title: string, total: string, rows: { cause: string, figure: string, share: number }[] }} Budget
  * @typedef {{ title: string, columns: string[], rows: string[][] }} Table
  * @typedef {{
- *   headline: { figure: string, sentence: string }, facts: Fact[], budgets: Budget[], tables: Table[],
+ *   headline: { figure: string, sentence: string, uncertainty: string }, facts: Fact[], budgets: Budget[], tables: Table[],
  *   cautions: { about: string, sentence: string }[], doubts: string[], notes: string[]
  * }} Shown
  * @typedef {{ shown: Shown, curves: Curve[] } & Record<string, unknown>} Answer
@@ -29,7 +30,7 @@
  * @typedef {{ form?: string, coverage_factor?: number | null, points: Record<string, number | null>[], reading: Reading }} ReadTable
  * @typedef {{ bench: Bench, understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[] }} Understood
  *
- * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], blocking: Fault[], answer: Answer | null }} Followed
+ * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], blocking: Fault[], answer: Answer | null, uncertainty: object | null }} Followed
  *
  * @typedef {Record<string, any>} Bench
  *
@@ -42,6 +43,8 @@
  *   read_responsivity(text: string, choices?: unknown): { value?: ReadTable, faults?: Fault[] },
  *   read_bench(text: string): { value?: Bench, faults?: Fault[] },
  *   write_number(pointer: string, value: number, mark: Mark): string,
+ *   write_doubts(bench: Bench, mark: Mark): { value?: object | null, faults?: Fault[] },
+ *   usual_doubts(): UsualDoubt[],
  *   write_table(pointer: string, bench: Bench, mark: Mark): { value?: string, faults?: Fault[] },
  * }} Door
  */

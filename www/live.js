@@ -1,15 +1,18 @@
 /** From what was typed to what is shown: the state of the page, and everything that follows from it. */
 
 import { answerView } from "./answer.js";
-import { choicesOf, textsOf, typed } from "./bench.js";
+import { choicesOf, takesPart, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { addNotes, controls, fill, firstChoices, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
+import { DOUBTS, doubtsOf, shortly } from "./doubts.js";
+import { showDoubts, showOffers } from "./doubts-view.js";
+import { addNotes, controls, fill, firstChoices, labelOf, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
 import { forgetting, showTables } from "./tables.js";
+import { checkedAnswer, showTrials } from "./trials.js";
 
 /**
  * @typedef {import("./bench.js").Texts} Texts
@@ -27,7 +30,9 @@ onTrap((message, fresh) => {
 start();
 export const [questions, version] = [core.questions(), core.version()];
 const all = controls();
-addNotes(core.fields());
+const fields = core.fields();
+addNotes(fields);
+const usual = core.usual_doubts();
 
 /** @type {{ texts: Texts, history: import("./history.js").History, question: string, mark: Mark, demo: boolean }} */
 export const state = { texts: {}, history: emptyHistory(), question: questions[0]?.name ?? "", mark: "auto", demo: true, ...soundState(load("state", {})) };
@@ -61,7 +66,8 @@ export function update() {
   showAlternatives(texts);
   const question = questions.find(({ name }) => name === state.question) ?? questions[0];
   if (!question) return;
-  const { understood, tables, faults, blocking, answer } = core.follow(question.name, typed(all, texts), mark);
+  const { understood, tables, faults, blocking, answer: live, uncertainty } = core.follow(question.name, typed(all, texts), mark);
+  const answer = live && (checkedAnswer(question.name, texts) ?? live);
   showUnderstood(texts, understood);
   showTables(texts, tables, changeChoices);
   showUse(question.fields);
@@ -69,17 +75,32 @@ export function update() {
     good.set(question.name, answer);
     byId("banner").hidden = true;
   }
-  showSummary(showFaults(faults, all, texts));
+  const ofDoubts = faults.filter(({ pointer }) => under(pointer, DOUBTS));
+  showSummary(showFaults(faults.filter((fault) => !ofDoubts.includes(fault)), all, texts));
+  showDoubts({ texts, question, numbers: numbersOf(question), usual, faults: ofDoubts, understood, change });
+  showOffers();
+  showDoubtful((pointer) => shortly(doubtsOf(texts), pointer));
+  showTrials(question.name, texts, !!uncertainty);
   showAnswer(question.name, blocking);
   showTools();
   save("state", state);
+}
+
+/** The numbers of a question that stand on the bench now. @param {import("./door.js").Question} question */
+function numbersOf(question) {
+  const known = new Set(fields.map(({ pointer }) => pointer));
+  const here = all.filter((control) => known.has(control.name) && takesPart(control, state.texts) && question.fields.some((field) => under(control.name, field)));
+  return here.map(({ name }) => ({ pointer: name, label: labelOf(name) }));
 }
 
 /** @param {string} question @param {Fault[]} faults */
 function showAnswer(question, faults) {
   const found = good.get(question);
   const answer = byId("answer");
-  answer.replaceChildren(...(found ? answerView(found, state.mark) : []));
+  const [head, ...rest] = found ? answerView(found, state.mark) : [];
+  byId("answer-head").replaceChildren(...(head ? [head] : []));
+  byId("answer-rest").replaceChildren(...rest);
+  byId("doubts").hidden = !found;
   const stale = faults.length > 0;
   answer.classList.toggle("stale", stale);
   const line = byId("state-line");
@@ -155,6 +176,7 @@ export function put(bench, name) {
   const write = {
     number: (/** @type {string} */ pointer, /** @type {number} */ value) => core.write_number(pointer, value, state.mark),
     table: (/** @type {string} */ pointer) => core.write_table(pointer, bench, state.mark).value ?? "",
+    doubts: () => core.write_doubts(bench, state.mark).value ?? null,
   };
   change({ ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
 }

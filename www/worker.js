@@ -13,7 +13,31 @@
  */
 
 /** Every kind of work that is done here. @type {Record<string, Job>} */
-export const JOBS = {};
+export const JOBS = { trials };
+
+/** A slice takes about so long, so that progress is seen and cancelling is felt, ms. */
+const SLICE = 60;
+
+/**
+ * The trials of a question.
+ *
+ * @param {{ question: string, bench: object }} payload
+ * @param {any} door
+ * @returns {Generator<Progress, unknown>} the answer with its trials, or faults
+ */
+function* trials({ question, bench }, door) {
+  const { value: run, faults } = door.Run.begin(question, bench, { trials: true });
+  if (!run) return { faults };
+  let slice = 500;
+  while (!run.done()) {
+    const began = performance.now();
+    run.advance(slice);
+    const took = Math.max(performance.now() - began, 1);
+    slice = Math.max(1, Math.round(slice * Math.min(4, SLICE / took)));
+    yield { share: 0, count: run.count() };
+  }
+  return run.finish();
+}
 
 /** More often than this a person cannot see it, and a screen reader could not say it, ms. */
 const BETWEEN_REPORTS = 100;

@@ -170,6 +170,12 @@ pub fn exact(value: f64, kind: &Kind) -> String {
     }
 }
 
+/// A share in per cent, exactly: read back, it is the same double.
+pub fn percent(share: f64) -> String {
+    let (digits, exponent) = split(&format!("{share:e}"));
+    format!("{} %", if share == 0.0 { "0".to_owned() } else { place_point(&digits, exponent + 2) })
+}
+
 /// The number for a spreadsheet or a script: the shortest text that is the same double.
 pub fn plain(value: f64) -> String {
     match value != 0.0 && !(1e-4..1e15).contains(&value.abs()) {

@@ -30,8 +30,8 @@ pub struct Question {
     pub ask: fn(&Bench) -> Result<Answer, Faults>,
     /// Only its numbers, for sweeps and searches.
     pub numbers: fn(&Bench) -> Result<Numbers, Faults>,
-    /// The number that the headline states, and whose uncertainty is wanted first.
-    pub main: &'static str,
+    /// The numbers whose uncertainty is offered, with what each is called; the headline's own comes first.
+    pub uncertain: &'static [(&'static str, &'static str)],
     /// One of its numbers made ready to be asked for many times.
     pub prepare: fn(&Bench, &'static str) -> Result<Prepared, Faults>,
 }
@@ -44,7 +44,10 @@ pub const QUESTIONS: &[Question] = &[
         fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
         ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
         numbers: sensitivity::numbers,
-        main: "average_power_w",
+        uncertain: &[
+            ("average_power_w", "the sensitivity"),
+            ("average_power_dbm", "the sensitivity, as a level"),
+        ],
         prepare: sensitivity::prepare,
     },
     Question {
@@ -59,7 +62,11 @@ pub const QUESTIONS: &[Question] = &[
         ],
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
-        main: "power_w",
+        uncertain: &[
+            ("power_w", "the absolute power"),
+            ("ratio", "the ratio to the other reading"),
+            ("correction_factor", "the correction alone"),
+        ],
         prepare: reading::prepare,
     },
 ];

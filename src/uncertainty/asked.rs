@@ -203,7 +203,8 @@ fn number_of(
     stated: &Uncertainty,
     at: &str,
 ) -> Result<Option<&'static str>, Faults> {
-    let wanted = stated.of.as_deref().unwrap_or(question.main);
+    let wanted =
+        stated.of.as_deref().or(question.uncertain.first().map(|(name, _)| *name)).unwrap_or_default();
     let numbers = (question.numbers)(bench)?;
     let pointer = format!("{at}/of");
     match numbers.iter().find(|(name, _)| *name == wanted) {

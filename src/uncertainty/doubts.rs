@@ -312,6 +312,17 @@ fn is_power_level(field: &Field) -> bool {
     field.kind.unit == "dBm"
 }
 
+/// Gives each number that has no value the mean of its repeated readings.
+pub fn fill_means(stated: &Uncertainty, bench: &mut Bench) {
+    for input in &stated.inputs {
+        let Some(field) = field(&input.pointer) else { continue };
+        let Amount::Readings { readings } = &input.amount else { continue };
+        if let Some(place @ None) = (field.place)(bench) {
+            *place = Some(repeated(readings, field).mean);
+        }
+    }
+}
+
 /// Where the mean of repeated readings differs from the number that stands on the bench.
 pub fn other_means(
     stated: &Uncertainty,

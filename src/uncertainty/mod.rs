@@ -4,9 +4,10 @@
 //! doubts that stand on its bench, and `shown` writes the result down.
 
 pub mod asked;
-mod doubts;
+pub mod doubts;
 pub mod gum;
 pub mod input;
 pub mod outcome;
 pub mod shown;
 pub mod trials;
+pub mod usual;
