@@ -150,7 +150,7 @@ fn spaced(text: &str) -> Vec<Row<'_>> {
 
 /// Cuts a line at runs of spaces. A unit stays with what it belongs to, and words parted by one space stay
 /// together where other cells are parted by more.
-fn words(line: &str) -> Vec<String> {
+pub(super) fn words(line: &str) -> Vec<String> {
     let wide: Vec<&str> = line
         .split("  ")
         .flat_map(|part| part.split('\t'))
