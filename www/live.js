@@ -54,6 +54,14 @@ export function sayFileFaults(sentences) {
   update();
 }
 
+/** What else follows. @type {(() => void)[]} */
+const followers = [];
+
+/** @param {() => void} follower called after each update */
+export function afterUpdate(follower) {
+  followers.push(follower);
+}
+
 /** Everything on the page follows from the texts. */
 export function update() {
   const { texts, mark } = state;
@@ -72,6 +80,8 @@ export function update() {
   showSummary(showFaults(faults, all, texts));
   showAnswer(question.name, blocking);
   showTools();
+  for (const part of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-question]"))) part.hidden = part.dataset.question !== question.name;
+  for (const follow of followers) follow();
   save("state", state);
 }
 

@@ -9,6 +9,7 @@ import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
 import { change, put, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { startLog } from "./log/panel.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
 
@@ -138,6 +139,7 @@ addEventListener("beforeprint", () => {
     area.after(paper);
   }
 });
+startLog();
 Object.assign(window, { leastlight: core });
 toHash();
 if (Object.keys(state.texts).length === 0) {

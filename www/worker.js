@@ -1,5 +1,7 @@
 /** The worker: long work, slice by slice, out of the page's way. It is a script of its own and never touches the page. */
 
+import { log } from "./log/job.js";
+
 /**
  * What has been done so far, and whatever else a job hands over as it goes.
  *
@@ -13,7 +15,7 @@
  */
 
 /** Every kind of work that is done here. @type {Record<string, Job>} */
-export const JOBS = {};
+export const JOBS = { log };
 
 /** More often than this a person cannot see it, and a screen reader could not say it, ms. */
 const BETWEEN_REPORTS = 100;

@@ -176,7 +176,8 @@ pub(super) fn words(line: &str) -> Vec<String> {
 }
 
 fn belongs_to_the_last(word: &str, last: &str) -> bool {
-    let is_unit = Unit::written(word).is_some() && !is_number(word) && !last.contains(['%', '(', '[', '/']);
+    let known = Unit::written(word).or_else(|| Unit::written_of_power(word));
+    let is_unit = known.is_some() && !is_number(word) && !last.contains(['%', '(', '[', '/']);
     let open = last.matches(['(', '[']).count() > last.matches([')', ']']).count();
     open || is_unit || word.starts_with(['(', '[', '/'])
 }

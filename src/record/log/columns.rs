@@ -256,6 +256,12 @@ fn times(columns: &mut LogColumns, column: &Column, said: &mut Vec<String>) {
         (Some(time), None) if column.mostly(time, is_time) => Times::OfDay,
         _ => Times::None,
     };
+    // What ISO 8601 writes has its units in itself.
+    if let Some(slot) = time.and_then(|time| columns.roles.get_mut(time))
+        && columns.times != Times::Elapsed
+    {
+        slot.1 = None;
+    }
     let first = time.or(day).and_then(|index| column.cells(index).next());
     if let (Times::None, Some(cell)) = (columns.times, first) {
         said.push(format!(

@@ -224,6 +224,11 @@ impl Cells {
         from.get(place.clone()).unwrap_or_default().trim_ascii()
     }
 
+    /// Whether the row is long enough to have a cell, be it empty.
+    pub(super) fn has(&self, index: usize) -> bool {
+        index < self.places.len()
+    }
+
     /// The number of cells up to the last one that is not empty.
     pub(super) fn width(&self, row: &[u8]) -> usize {
         let filled = |index: &usize| !self.get(*index, row).is_empty();

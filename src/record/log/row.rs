@@ -212,6 +212,9 @@ impl RowReader {
                 self.cells.width(bytes)
             ));
         }
+        if !self.cells.has(self.places.power) {
+            return Shows::Bad("The row ends before its reading.".to_owned());
+        }
         row.is_cut = true;
         match self.time(bytes) {
             Ok(time_s) => row.time_s = time_s,
