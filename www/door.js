@@ -34,7 +34,7 @@
  * @typedef {{ low: number, high: number, breaks: number[] }} Band
  * @typedef {Reading & { times: string, stated_setting_nm: number | null, status: { word: string, rows: number, good: boolean }[] }} LogReading
  * @typedef {{ reading: LogReading, counts: Record<string, number>, curves: Curve[], shown: Shown } & Record<string, unknown>} Log
- * @typedef {{ value?: Log, faults?: Fault[], reading?: LogReading | null, file?: Blob }} LogOutcome what the worker makes of a log
+ * @typedef {{ value?: Log, faults?: Fault[], reading?: LogReading | null }} LogOutcome what the worker makes of a log
  *
  * @typedef {Record<string, any>} Bench
  *

@@ -7,47 +7,42 @@ const SLICE = 1 << 21;
 const HEAD = 1 << 16;
 
 /**
- * @param {{ file: File, options: Record<string, unknown> }} order
+ * Reads a file of `size` bytes, slice by slice from the page, and hands over what is written of the corrected log.
+ *
+ * @param {{ size: number, options: Record<string, unknown> }} order
  * @param {any} door
- * @returns {AsyncGenerator<import("../worker.js").Progress, unknown>} the outcome of the core, with the corrected log as a file where it was asked for
+ * @param {import("../worker.js").Ask} ask for `{ from, to }`, the bytes of the file; or to take `{ written }`
+ * @returns {AsyncGenerator<import("../worker.js").Progress, unknown>} the outcome of the core
  */
-export async function* log({ file, options }, door) {
+export async function* log({ size, options }, door, ask) {
   const reader = new door.LogSlices(options);
-  const utf8 = await intoUtf8(file);
-  /** @type {Blob[]} */
-  const parts = [];
-  let next = bytesOf(file, 0);
-  for (let from = 0; from < file.size && !reader.is_refused(); from += SLICE) {
+  const bytes = async (/** @type {number} */ from) => new Uint8Array(await ask({ from, to: from + SLICE }));
+  const hand = (/** @type {Uint8Array} */ written) => ask({ written }, [written.buffer]);
+  let next = bytes(0);
+  const utf8 = intoUtf8((await next).subarray(0, HEAD));
+  for (let from = 0; from < size && !reader.is_refused(); from += SLICE) {
     const slice = await next;
     // The file is read on while the core works.
-    next = bytesOf(file, from + SLICE);
-    reader.push(utf8(slice, from + SLICE >= file.size));
+    next = bytes(from + SLICE);
+    reader.push(utf8(slice, from + SLICE >= size));
     const written = reader.take();
-    if (written.length > 0) parts.push(new Blob([written]));
-    yield { share: Math.min(1, (from + SLICE) / file.size), count: reader.rows() };
+    if (written.length > 0) await hand(written);
+    yield { share: Math.min(1, (from + SLICE) / size), count: reader.rows() };
   }
   const outcome = reader.finish();
-  const text = outcome.value?.text;
-  if (text === undefined) return outcome;
-  delete outcome.value.text;
-  return { ...outcome, file: new Blob([...parts, text], { type: "text/csv" }) };
+  if (outcome.value?.text !== undefined) await hand(new TextEncoder().encode(outcome.value.text));
+  return outcome;
 }
 
-/** @param {Blob} file @param {number} from @returns {Promise<Uint8Array<ArrayBuffer>>} */
-async function bytesOf(file, from) {
-  return new Uint8Array(await file.slice(from, from + SLICE).arrayBuffer());
-}
-
-/** The step from the file's characters to those of the core; spreadsheets like UTF-16, or Windows' own eight bits. @param {Blob} file @returns {Promise<(slice: Uint8Array<ArrayBuffer>, last: boolean) => Uint8Array>} */
-async function intoUtf8(file) {
-  const head = new Uint8Array(await file.slice(0, HEAD).arrayBuffer());
+/** The step from the file's characters to those of the core; spreadsheets like UTF-16, or Windows' own eight bits. @param {Uint8Array} head @returns {(slice: Uint8Array, last: boolean) => Uint8Array} */
+function intoUtf8(head) {
   const label = labelOf(head);
   if (label === "utf-8") return (slice) => slice;
   const [decoder, encoder] = [new TextDecoder(label), new TextEncoder()];
   return (slice, last) => encoder.encode(decoder.decode(slice, { stream: !last }));
 }
 
-/** @param {Uint8Array<ArrayBuffer>} head */
+/** @param {Uint8Array} head */
 export function labelOf(head) {
   if (head[0] === 0xff && head[1] === 0xfe) return "utf-16le";
   if (head[0] === 0xfe && head[1] === 0xff) return "utf-16be";

@@ -40,6 +40,7 @@ export function startLog() {
 /** @param {File} file */
 function open(file) {
   Object.assign(log, { file, choices: {}, outcome: null });
+  show();
   read();
 }
 
@@ -56,31 +57,38 @@ function read() {
 
 function saveCorrected() {
   const corrected = state.mark === "auto" ? {} : { decimal_mark: state.mark };
-  work({ corrected }, ({ file }) => {
-    if (file) save(`${(log.file?.name ?? "log").replace(/\.[^.]*$/, "")}.corrected.csv`, "text/csv", file);
+  work({ corrected }, (_, written) => {
+    save(`${(log.file?.name ?? "log").replace(/\.[^.]*$/, "")}.corrected.csv`, "text/csv", new Blob(written));
     say("Saved the corrected log");
   });
 }
 
-/** @param {Record<string, unknown>} more options @param {(outcome: LogOutcome) => void} use */
+/** @param {Record<string, unknown>} more options @param {(outcome: LogOutcome, written: Blob[]) => void} use */
 function work(more, use) {
   const { file } = log;
   if (!file) return;
   job?.cancel();
   const options = { choices: log.choices, bench: understoodBench().bench, ...more };
+  /** Blobs, so that an engine may keep them on its disk. @type {Blob[]} */
+  const written = [];
   let spoken = performance.now();
   progress(0, 0);
   say(`Reading ${file.name}`);
-  job = startWork("log", { file, options }, {
+  job = startWork("log", { size: file.size, options }, {
     progress: ({ share, count: rows }) => {
       progress(share, rows);
       if (performance.now() - spoken < BETWEEN_WORDS) return;
       spoken = performance.now();
       say(`${Math.round(100 * share)} % read`);
     },
+    answer: async (asked) => {
+      if ("from" in asked) return file.slice(asked.from, asked.to).arrayBuffer();
+      written.push(new Blob([asked.written]));
+      return undefined;
+    },
     done: (outcome) => {
       ended();
-      use(outcome);
+      use(outcome, written);
     },
     failed: (message) => {
       ended();
