@@ -424,3 +424,31 @@ proptest! {
         let _ = reader.finish();
     }
 }
+
+/// For the check that puts the same log to the built core and compares bit by bit (tests/node/log.test.mjs).
+#[test]
+fn a_native_log_is_written_for_the_built_core_to_repeat() {
+    let rows: String = (0..2500)
+        .map(|row| {
+            let level = -20.0 - f64::from(row * 7919 % 1000) * 1e-3;
+            format!(
+                "2026-11-30;14:{:02}:{:02};{level:.3};dBm;{};R1;OK\n",
+                row / 60,
+                row % 60,
+                1310 + row % 240
+            )
+        })
+        .collect();
+    let options = json!({ "bench": bench(), "corrected": {}, "choices": { "decimal_mark": "point" } });
+    let calls: Vec<Value> = [
+        MIXED.replace(',', "."),
+        format!("Date;Time;Reading;Unit;Set (nm);Range;Status\n{rows}"),
+    ]
+    .iter()
+    .map(|text| json!({ "text": text, "options": options, "value": read(text, &options).expect("a log") }))
+    .collect();
+    let folder = concat!(env!("CARGO_MANIFEST_DIR"), "/target");
+    std::fs::create_dir_all(folder).expect("target/ can be made");
+    std::fs::write(format!("{folder}/replay-log.json"), json!(calls).to_string())
+        .expect("target/ can be written");
+}

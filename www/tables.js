@@ -111,14 +111,18 @@ export function columnsView(reading, choices, kind, set) {
   const roles = kind === "certificate" || kind === "log" ? Object.keys(known) : ["wavelength", "responsivity", "ignored"];
   const names = Object.fromEntries(roles.map((role) => [role, known[role]?.says ?? role]));
   const choose = (/** @type {Column} */ column, /** @type {Partial<Column>} */ to) => {
-    const others = /** @type {Column[]} */ (choices?.columns ?? []).filter(({ index }) => index !== column.index);
     const { index, role, unit } = { ...column, ...to };
+    // What another column was chosen for, and this one is now, the other one is no more.
+    const stays = (/** @type {Column} */ other) => other.index !== index && (other.role !== role || role === "ignored");
+    const others = /** @type {Column[]} */ (choices?.columns ?? []).filter(stays);
     const fits = known[role]?.units.includes(unit ?? "");
     set({ columns: [...others, { index, role, ...(fits ? { unit } : {}) }] });
   };
   const rows = reading.columns.map((column) => {
     const name = `Column ${column.index + 1}`;
-    const units = known[column.role]?.units ?? [];
+    // A time as ISO 8601 writes it has its units in itself.
+    const hasUnit = column.role !== "time" || /** @type {any} */ (reading).times === "elapsed";
+    const units = hasUnit ? (known[column.role]?.units ?? []) : [];
     return h(
       "tr",
       {},
@@ -151,7 +155,8 @@ export function select(key, label, options, value, change) {
 /** @param {string} key @param {string | null} label @param {Record<string, string>} options @param {string} value @param {(value: string) => void} change */
 function bare(key, label, options, value, change) {
   const choose = (/** @type {Event} */ event) => change(/** @type {HTMLSelectElement} */ (event.target).value);
-  const items = Object.entries(options).map(([name, says]) => h("option", { value: name, selected: name === value }, says));
+  const open = value in options ? [] : [["", "choose…"]];
+  const items = [...open, ...Object.entries(options)].map(([name, says]) => h("option", { value: name, selected: name === value }, says));
   return h("select", { "data-choice": key, "aria-label": label, change: choose, autocomplete: "off" }, items);
 }
 

@@ -24,9 +24,10 @@ const SETTINGS = { file: "the file", bench: "the bench" };
 export function understoodView({ value, faults = [], reading: refused }, choices, change) {
   const reading = value?.reading ?? refused;
   const wrong = faults.map(({ sentence }) => h("p", { class: "fault" }, sentence));
-  if (!reading) return h("div", { class: "read-as" }, wrong);
   const set = (/** @type {Choices} */ more) => change({ ...choices, ...more });
   const chosen = Object.keys(choices).length > 0;
+  const forget = chosen && h("button", { type: "button", class: "quiet", "data-choice": "forget", click: () => change(null) }, "Recognise it anew");
+  if (!reading) return h("div", { class: "read-as" }, wrong, forget);
   return h(
     "div",
     { class: "read-as" },
@@ -37,7 +38,7 @@ export function understoodView({ value, faults = [], reading: refused }, choices
     statusChoices(reading, set),
     reading.cleaned.length > 0 && h("ul", { class: "cleaned" }, reading.cleaned.map((sentence) => h("li", {}, sentence))),
     value && badRows(value),
-    chosen && h("button", { type: "button", class: "quiet", "data-choice": "forget", click: () => change(null) }, "Recognise it anew"),
+    forget,
   );
 }
 

@@ -108,9 +108,26 @@ impl Head {
                 self.mark = mark;
                 self.said.extend(sentence);
             }
+            Decision::Open(_) if let Some(mark) = self.mark_of_times(rows) => {
+                self.mark = mark;
+                let name = mark.name();
+                self.said.push(format!("The decimal mark of the numbers is the {name}, as in the times."));
+            }
             Decision::Open(sentence) => {
                 self.faults.push(Fault::new("", Code::Unreadable, excerpt(text).as_str().into(), &sentence));
             }
+        }
+    }
+
+    /// The mark before the fraction of a second, where times of the day have one.
+    fn mark_of_times(&self, rows: &[&Row]) -> Option<DecimalMark> {
+        let index = self.columns.index(Role::Time)?;
+        let cells = || rows.iter().map(|row| row.cell(index)).filter(|cell| cell.contains(':'));
+        let has = |mark: DecimalMark| cells().any(|cell| cell.contains(mark.character()));
+        match (has(DecimalMark::Point), has(DecimalMark::Comma)) {
+            (true, false) => Some(DecimalMark::Point),
+            (false, true) => Some(DecimalMark::Comma),
+            _ => None,
         }
     }
 
