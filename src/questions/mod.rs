@@ -3,6 +3,7 @@
 pub mod curve;
 pub mod log;
 pub mod needs;
+pub mod prepared;
 pub mod reading;
 pub mod sensitivity;
 pub mod shown;
@@ -11,6 +12,7 @@ pub mod transfer;
 
 use crate::bench::Bench;
 use crate::fault::Faults;
+use prepared::Prepared;
 use serde::Serialize;
 
 /// Named numbers of an answer; a number that does not exist for this bench is absent.
@@ -29,6 +31,10 @@ pub struct Question {
     pub ask: fn(&Bench) -> Result<Answer, Faults>,
     /// Only its numbers, for sweeps and searches.
     pub numbers: fn(&Bench) -> Result<Numbers, Faults>,
+    /// The number that the headline states, and whose uncertainty is wanted first.
+    pub main: &'static str,
+    /// One of its numbers made ready to be asked for many times.
+    pub prepare: fn(&Bench, &'static str) -> Result<Prepared, Faults>,
 }
 
 /// All questions.
@@ -39,6 +45,8 @@ pub const QUESTIONS: &[Question] = &[
         fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
         ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
         numbers: sensitivity::numbers,
+        main: "average_power_w",
+        prepare: sensitivity::prepare,
     },
     Question {
         name: "reading",
@@ -52,6 +60,8 @@ pub const QUESTIONS: &[Question] = &[
         ],
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
+        main: "power_w",
+        prepare: reading::prepare,
     },
 ];
 
@@ -63,4 +73,14 @@ pub enum Answer {
     Sensitivity(Box<sensitivity::Answer>),
     /// What a reading is worth.
     Reading(Box<reading::Answer>),
+}
+
+impl Answer {
+    /// The answer as it is shown, and what is drawn.
+    pub fn shown_mut(&mut self) -> (&mut shown::Shown, &mut Vec<curve::Curve>) {
+        match self {
+            Answer::Sensitivity(answer) => (&mut answer.shown, &mut answer.curves),
+            Answer::Reading(answer) => (&mut answer.shown, &mut answer.curves),
+        }
+    }
 }

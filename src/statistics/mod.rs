@@ -2,4 +2,5 @@
 
 pub mod normal;
 pub mod running;
+pub mod shape;
 pub mod transfer;
