@@ -15,7 +15,7 @@
  * @typedef {{ title: string, total: string, rows: { cause: string, figure: string, share: number }[] }} Budget
  * @typedef {{ title: string, columns: string[], rows: string[][] }} Table
  * @typedef {{
- *   headline: { figure: string, sentence: string }, facts: Fact[], budgets: Budget[], tables: Table[],
+ *   headline: { figure: string, sentence: string, uncertainty: string }, facts: Fact[], budgets: Budget[], tables: Table[],
  *   cautions: { about: string, sentence: string }[], doubts: string[], notes: string[]
  * }} Shown
  * @typedef {{ shown: Shown, curves: Curve[] } & Record<string, unknown>} Answer

@@ -75,9 +75,10 @@ function badRows({ counts, reading: { bad_rows: listed } }) {
 
 /** What came of it. @param {Log} log @param {Mark} mark @param {() => void} save */
 export function logView({ shown, curves }, mark, save) {
-  const { figure, sentence } = shown.headline;
+  const { figure, sentence, uncertainty } = shown.headline;
   const parts = [
     h("p", { class: "headline-text" }, h("span", { class: "log-figure" }, marked(figure, mark)), " ", marked(sentence, mark)),
+    uncertainty !== "" && h("p", {}, marked(uncertainty, mark)),
     h("div", { class: "actions" }, h("button", { type: "button", id: "log-save", click: save }, "Save corrected CSV")),
     doubts(shown, mark),
     facts(shown, mark),

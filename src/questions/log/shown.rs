@@ -28,6 +28,7 @@ fn headline(log: &Log) -> Headline {
         return Headline {
             figure: "No power".to_owned(),
             sentence: format!("is shown on any of the {} rows.", whole(log.counts.rows)),
+            uncertainty: String::new(),
             copy: "No power".to_owned(),
         };
     };
@@ -37,17 +38,20 @@ fn headline(log: &Log) -> Headline {
         "is the mean power as read"
     };
     let expanded = log.correction.as_ref().and_then(|of| Some((of.expanded_percent?, of.coverage_factor?)));
-    let power_w = match expanded.filter(|_| log.corrected.is_some()) {
-        Some((percent, k)) => format!(
-            "{} (k = {}, as each of them)",
-            plus_minus(summary.mean_w, summary.mean_w.abs() * percent / 100.0, "W"),
-            brief(k, 3)
-        ),
-        None => prefixed(summary.mean_w, "W", 4),
-    };
+    let uncertainty =
+        expanded.filter(|_| log.corrected.is_some()).map_or_else(String::new, |(percent, k)| {
+            let expanded_w = summary.mean_w.abs() * percent / 100.0;
+            format!("{} (k = {}, that of each row)", plus_minus(summary.mean_w, expanded_w, "W"), brief(k, 3))
+        });
     Headline {
+        uncertainty,
         figure: power(summary.mean_w, summary.mean_dbm),
-        sentence: format!("{what}, {power_w}, over {} of {} rows.", whole(summary.count), whole(rows)),
+        sentence: format!(
+            "{what}, {}, over {} of {} rows.",
+            prefixed(summary.mean_w, "W", 4),
+            whole(summary.count),
+            whole(rows)
+        ),
         copy: summary.mean_dbm.map_or_else(|| format!("{} W", summary.mean_w), |dbm| format!("{dbm} dBm")),
     }
 }
