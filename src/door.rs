@@ -10,9 +10,12 @@ use crate::explore::sweep::{Sweep, sweep};
 use crate::fault::{Allowed, Code, Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
+use crate::questions::log::{Log, LogReader};
 use crate::questions::transfer::{self, Transfer};
 use crate::questions::{Answer, QUESTIONS, Question};
-use crate::record::{self, CertificateTable, Choices, DccReading, Reading, ResponsivityTable, SpectrumTable};
+use crate::record::{
+    self, CertificateTable, Choices, DccReading, Reading, Refused, ResponsivityTable, SpectrumTable,
+};
 use crate::tree::Tree;
 use crate::typed;
 use crate::uncertainty::asked::{self as uncertainty, Begun, Uncertain};
@@ -287,6 +290,17 @@ pub fn read_spectrum(text: &str, choices: &Tree) -> Result<SpectrumTable, Faults
 /// or a file's text.
 pub fn transfer_calibration(text: &str, bench: &Tree, choices: &Tree) -> Result<Transfer, Faults> {
     transfer::transfer_calibration(text, &Bench::from_tree(bench)?, choices)
+}
+
+/// Reads a log of readings from a file's text, corrects it by the certificate on the bench and sums it up.
+///
+/// `options` may have `choices` (delimiter, decimal_mark, first_row, columns, good_status, setting: file or bench), the
+/// `bench`, an `uncertainty` from elsewhere ({relative_standard, coverage_factor}), and `corrected` ({delimiter?,
+/// decimal_mark?}), which asks for the corrected log as text. A log of many rows is better read in slices: [`LogReader`].
+pub fn read_log(text: &str, options: &Tree) -> Result<Log, Refused> {
+    let mut reader = LogReader::new(options);
+    reader.push(text.as_bytes());
+    reader.finish()
 }
 
 /// Reads a digital calibration certificate from the text of its file.

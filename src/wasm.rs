@@ -2,6 +2,8 @@
 
 use crate::door;
 use crate::fault::{Code, Fault, Faults};
+use crate::questions::log::{Log, LogReader};
+use crate::record::Refused;
 use crate::tree::Tree;
 use serde::Serialize;
 use serde_wasm_bindgen::Serializer;
@@ -115,6 +117,67 @@ pub fn transfer_calibration(text: &str, bench: JsValue, choices: JsValue) -> Res
 #[wasm_bindgen]
 pub fn read_dcc(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {
     outcome("value", tree(choices, "/choices").and_then(|choices| door::read_dcc(text, &choices)))
+}
+
+/// `{ value }`, or `{ faults }` and, where the table itself was understood, its `reading` beside them.
+#[wasm_bindgen]
+pub fn read_log(text: &str, options: JsValue) -> Result<JsValue, JsValue> {
+    match tree(options, "/options") {
+        Ok(options) => log_outcome(door::read_log(text, &options)),
+        Err(faults) => log_outcome(Err(Refused { faults, reading: None })),
+    }
+}
+
+/// A log that arrives in slices of bytes: `push` them, `take` what was written of the corrected log, `finish`.
+#[wasm_bindgen]
+pub struct LogSlices {
+    reader: Result<LogReader, Faults>,
+}
+
+#[wasm_bindgen]
+impl LogSlices {
+    /// With options as for `read_log`.
+    #[wasm_bindgen(constructor)]
+    pub fn new(options: JsValue) -> LogSlices {
+        LogSlices { reader: tree(options, "/options").map(|options| LogReader::new(&options)) }
+    }
+
+    /// Takes the next bytes, which are UTF-8.
+    pub fn push(&mut self, bytes: &[u8]) {
+        if let Ok(reader) = &mut self.reader {
+            reader.push(bytes);
+        }
+    }
+
+    /// What was written of the corrected log since the last time.
+    pub fn take(&mut self) -> Vec<u8> {
+        self.reader.as_mut().map(LogReader::take).unwrap_or_default()
+    }
+
+    /// How many rows have been read so far.
+    pub fn rows(&self) -> f64 {
+        self.reader.as_ref().map_or(0.0, |reader| reader.rows() as f64)
+    }
+
+    /// Whether further bytes are of no use, because the log cannot be read.
+    pub fn is_refused(&self) -> bool {
+        self.reader.as_ref().map_or(true, LogReader::is_refused)
+    }
+
+    /// As `read_log`.
+    pub fn finish(self) -> Result<JsValue, JsValue> {
+        log_outcome(match self.reader {
+            Ok(reader) => reader.finish(),
+            Err(faults) => Err(Refused { faults, reading: None }),
+        })
+    }
+}
+
+fn log_outcome(result: Result<Log, Refused>) -> Result<JsValue, JsValue> {
+    match result {
+        Ok(log) => outcome("value", Ok(log)),
+        Err(refused) => out(&refused),
+    }
 }
 
 /// `{ value }`, the text of a file, or `{ faults }`.

@@ -8,7 +8,7 @@
  * @typedef {{ name: string, kind: Kind, when: [string, string][], groups: string[] }} Control
  */
 
-import { DOUBTS, typedDoubts } from "./doubts.js";
+import { DOUBTS, typedDoubts } from "./doubts/text.js";
 
 /** Decides between a PIN and an avalanche detector; the bench itself says it by `avalanche` being there. */
 export const DETECTOR_TYPE = "detector-type";

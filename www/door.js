@@ -10,7 +10,7 @@
  * @typedef {{ label: string, unit: string, scale: "linear" | "log", min?: number | null, max?: number | null }} Axis
  * @typedef {{ name: string, x: number[], y: number[] }} Line
  * @typedef {{ name: string, axis?: "x" | "y", at?: number, x?: number, y?: number }} CurveMark
- * @typedef {{ name: string, title: string, x: Axis, y: Axis, lines: Line[], marks: CurveMark[] }} Curve
+ * @typedef {{ name: string, title: string, x: Axis, y: Axis, lines: Line[], marks: CurveMark[], band?: Band }} Curve
  *
  * @typedef {{ name: string, figure: string, note?: string, copy?: string }} Fact
  * @typedef {{ title: string, total: string, rows: { cause: string, figure: string, share: number }[] }} Budget
@@ -31,6 +31,11 @@
  * @typedef {{ bench: Bench, understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[] }} Understood
  *
  * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], blocking: Fault[], answer: Answer | null, uncertainty: object | null }} Followed
+ *
+ * @typedef {{ low: number, high: number, breaks: number[] }} Band
+ * @typedef {Reading & { times: string, stated_setting_nm: number | null, status: { word: string, rows: number, good: boolean }[] }} LogReading
+ * @typedef {{ reading: LogReading, counts: Record<string, number>, curves: Curve[], shown: Shown } & Record<string, unknown>} Log
+ * @typedef {{ value?: Log, faults?: Fault[], reading?: LogReading | null }} LogOutcome what the worker makes of a log
  *
  * @typedef {Record<string, any>} Bench
  *

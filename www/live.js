@@ -5,14 +5,14 @@ import { choicesOf, takesPart, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { DOUBTS, doubtsOf, shortly } from "./doubts.js";
-import { showDoubts, showOffers } from "./doubts-view.js";
+import { DOUBTS, doubtsOf, shortly } from "./doubts/text.js";
+import { showDoubts, showOffers } from "./doubts/view.js";
 import { addNotes, controls, fill, firstChoices, labelOf, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
 import { forgetting, showTables } from "./tables.js";
-import { checkedAnswer, showTrials } from "./trials.js";
+import { checkedAnswer, showTrials } from "./doubts/trials.js";
 
 /**
  * @typedef {import("./bench.js").Texts} Texts
@@ -59,6 +59,14 @@ export function sayFileFaults(sentences) {
   update();
 }
 
+/** What else follows. @type {(() => void)[]} */
+const followers = [];
+
+/** @param {() => void} follower called after each update */
+export function afterUpdate(follower) {
+  followers.push(follower);
+}
+
 /** Everything on the page follows from the texts. */
 export function update() {
   const { texts, mark } = state;
@@ -83,6 +91,8 @@ export function update() {
   showTrials(question.name, texts, !!uncertainty);
   showAnswer(question.name, blocking);
   showTools();
+  for (const part of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-question]"))) part.hidden = part.dataset.question !== question.name;
+  for (const follow of followers) follow();
   save("state", state);
 }
 

@@ -4,16 +4,17 @@ import { DETECTOR_TYPE } from "./bench.js";
 import { say } from "./copy.js";
 import { core } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { doubtsOf, withDoubts } from "./doubts.js";
-import { addDoubt } from "./doubts-view.js";
+import { doubtsOf, withDoubts } from "./doubts/text.js";
+import { addDoubt } from "./doubts/view.js";
 import { firstChoices, form, inputOf, labelOf } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
 import { change, put, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { startLog } from "./log/panel.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
-import { cancel, run } from "./trials.js";
+import { cancel, run } from "./doubts/trials.js";
 
 /** @typedef {import("./door.js").Mark} Mark */
 
@@ -163,6 +164,7 @@ addEventListener("beforeprint", () => {
     area.after(paper);
   }
 });
+startLog();
 Object.assign(window, { leastlight: core });
 toHash();
 if (Object.keys(state.texts).length === 0) {

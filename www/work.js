@@ -9,8 +9,9 @@ import { coreBytes, coreModule } from "./core.js";
  *
  * @typedef {object} Listeners
  * @property {(progress: Progress) => void} [progress] a few times a second
+ * @property {(asked: any) => Promise<ArrayBuffer | undefined>} [answer] what the worker needs from the page; a buffer moves over
  * @property {(outcome: any) => void} done
- * @property {(message: string) => void} failed a mistake of ours, in words of the engine
+ * @property {(message: string) => void} failed a mistake of ours or a file that is gone, in words of the engine
  */
 
 /**
@@ -18,11 +19,11 @@ import { coreBytes, coreModule } from "./core.js";
  * has trapped is never used again. Exactly one of `done` and `failed` is called, unless the job is cancelled first.
  *
  * @param {string} name one of the worker's jobs
- * @param {unknown} payload whatever the job takes; files go as they are, without being copied
+ * @param {unknown} payload whatever the job takes
  * @param {Listeners} listeners
  * @returns {{ cancel(): void }} after which nothing is called any more
  */
-export function startWork(name, payload, { progress, done, failed }) {
+export function startWork(name, payload, { progress, answer, done, failed }) {
   const text = (/** @type {string} */ id) => document.getElementById(id)?.textContent ?? "";
   const url = URL.createObjectURL(new Blob([text("glue"), "\n", text("worker")], { type: "text/javascript" }));
   /** @type {Worker | null} */
@@ -38,6 +39,14 @@ export function startWork(name, payload, { progress, done, failed }) {
     end();
     failed(message);
   };
+  const reply = async (/** @type {unknown} */ asked) => {
+    try {
+      const buffer = await answer?.(asked);
+      if (!over) worker?.postMessage({ answer: buffer }, buffer ? [buffer] : []);
+    } catch (error) {
+      fail(textOf(error));
+    }
+  };
   try {
     worker = new Worker(url);
     worker.onmessage = (/** @type {MessageEvent<Message>} */ { data }) => {
@@ -45,6 +54,7 @@ export function startWork(name, payload, { progress, done, failed }) {
       if (over) return;
       if ("progress" in data) return progress?.(data.progress);
       if ("failed" in data) return fail(data.failed);
+      if ("asked" in data) return reply(data.asked);
       end();
       done(data.done);
     };
@@ -56,10 +66,13 @@ export function startWork(name, payload, { progress, done, failed }) {
     order(worker, name, payload);
   } catch (error) {
     // Later, so that the caller holds what this function returns.
-    queueMicrotask(() => fail(error instanceof Error ? error.message : String(error)));
+    queueMicrotask(() => fail(textOf(error)));
   }
   return { cancel: end };
 }
+
+/** @param {unknown} error */
+const textOf = (error) => (error instanceof Error ? error.message : String(error));
 
 /** The compiled core is shared; an engine that cannot hand it over compiles it again. @param {Worker} worker @param {string} name @param {unknown} payload */
 function order(worker, name, payload) {

@@ -1,6 +1,7 @@
 //! What someone came to find out: one question a file, each a pure function of the bench.
 
 pub mod curve;
+pub mod log;
 pub mod needs;
 pub mod prepared;
 pub mod reading;

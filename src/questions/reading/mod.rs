@@ -1,7 +1,7 @@
 //! What is this reading worth?
 
 pub(super) mod certified;
-mod light;
+pub(super) mod light;
 mod over_spectrum;
 mod prepared;
 mod shown;

@@ -1,14 +1,14 @@
 /** A run of trials: started, watched, cancelled, and its result kept for as long as the bench stays the same. */
 
-import { say } from "./copy.js";
-import { byId, h, inputById, setText } from "./dom.js";
-import { doubtsOf } from "./doubts.js";
-import { startWork } from "./work.js";
+import { say } from "../copy.js";
+import { byId, h, inputById, setText } from "../dom.js";
+import { doubtsOf } from "./text.js";
+import { startWork } from "../work.js";
 
 /**
- * @typedef {import("./door.js").Answer} Answer
- * @typedef {import("./door.js").Bench} Bench
- * @typedef {import("./bench.js").Texts} Texts
+ * @typedef {import("../door.js").Answer} Answer
+ * @typedef {import("../door.js").Bench} Bench
+ * @typedef {import("../bench.js").Texts} Texts
  */
 
 /** The run that is under way. @type {{ cancel(): void } | null} */

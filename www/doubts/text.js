@@ -2,7 +2,7 @@
  * What is known of the bench's doubts: one text among the others, JSON in the very form that the core understands, with
  * amounts as they were typed. Nothing here touches the document.
  *
- * @typedef {import("./bench.js").Texts} Texts
+ * @typedef {import("../bench.js").Texts} Texts
  * @typedef {Record<string, string> & { pointer: string }} Doubt
  * @typedef {{ trials: string, seed: string, adaptive: boolean }} Trials
  * @typedef {{ of: string | null, inputs: Doubt[], correlations: [number, number, string][], coverage_probability: number, monte_carlo: Trials }} Doubts

@@ -1,16 +1,16 @@
 /** The doubts as they are edited, beneath the headline that they widen. */
 
-import { amountKey, doubtsOf, restated, WAYS, wayOf, withDoubts, without } from "./doubts.js";
-import { byId, h, setText } from "./dom.js";
-import { under } from "./fields.js";
+import { amountKey, doubtsOf, restated, WAYS, wayOf, withDoubts, without } from "./text.js";
+import { byId, h, setText } from "../dom.js";
+import { under } from "../fields.js";
 
 /**
- * @typedef {import("./bench.js").Texts} Texts
- * @typedef {import("./doubts.js").Doubt} Doubt
- * @typedef {import("./doubts.js").Doubts} Doubts
- * @typedef {import("./door.js").Fault} Fault
- * @typedef {import("./door.js").Question} Question
- * @typedef {import("./door.js").UsualDoubt} UsualDoubt
+ * @typedef {import("../bench.js").Texts} Texts
+ * @typedef {import("./text.js").Doubt} Doubt
+ * @typedef {import("./text.js").Doubts} Doubts
+ * @typedef {import("../door.js").Fault} Fault
+ * @typedef {import("../door.js").Question} Question
+ * @typedef {import("../door.js").UsualDoubt} UsualDoubt
  *
  * @typedef {object} Around
  * @property {Texts} texts
