@@ -200,11 +200,11 @@ fn table(uncertain: &Uncertain) -> Table {
     let columns = [
         "In doubt",
         "Estimate",
-        "Standard uncertainty",
+        "u",
         "Distribution",
         "ν",
-        "Sensitivity",
-        "Contribution",
+        "Sensitivity c",
+        "|c·u|",
         "Share / %",
     ];
     let row = |row: &Contribution| {

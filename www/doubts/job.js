@@ -23,5 +23,5 @@ export function* trials({ question, bench }, door) {
     slice = Math.max(1, Math.round(slice * Math.min(4, SLICE / took)));
     yield { share: 0, count: run.count() };
   }
-  return run.finish();
+  return { answer: run.finish() };
 }

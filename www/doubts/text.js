@@ -25,11 +25,11 @@ export const withDoubts = (texts, doubts) => ({ ...texts, [DOUBTS]: JSON.stringi
 
 /** The ways to state a doubt: what the core calls the amount, and how it is spread. @type {Record<string, { says: string, key: string, distribution: string }>} */
 export const WAYS = {
-  rectangular: { says: "limits ±, anything between", key: "half_width", distribution: "rectangular" },
-  triangular: { says: "limits ±, likelier inside", key: "half_width", distribution: "triangular" },
-  arcsine: { says: "limits ±, likelier at both ends", key: "half_width", distribution: "arcsine" },
-  standard: { says: "standard uncertainty", key: "standard", distribution: "normal" },
-  expanded: { says: "expanded uncertainty, k =", key: "expanded", distribution: "normal" },
+  rectangular: { says: "± limits, rectangular", key: "half_width", distribution: "rectangular" },
+  triangular: { says: "± limits, triangular", key: "half_width", distribution: "triangular" },
+  arcsine: { says: "± limits, arcsine", key: "half_width", distribution: "arcsine" },
+  standard: { says: "standard u", key: "standard", distribution: "normal" },
+  expanded: { says: "expanded U, k =", key: "expanded", distribution: "normal" },
   readings: { says: "repeated readings", key: "readings", distribution: "normal" },
 };
 

@@ -33,10 +33,12 @@ export function run(question, texts, bench, show) {
   progress(0, total);
   running = startWork("trials", { question, bench: bench() }, {
     progress: ({ count }) => progress(count, total),
-    done: ({ answer, uncertainty, faults }) => {
+    done: ({ answer, faults }) => {
       running = null;
-      if (answer && uncertainty?.monte_carlo) checked = { key, answer };
-      wrong = faults ? faults.map((/** @type {{ sentence: string }} */ { sentence }) => sentence).join(" ") : uncertainty?.monte_carlo ? "" : "No trial gave a value.";
+      const ran = !!answer?.uncertainty?.monte_carlo;
+      if (ran) checked = { key, answer };
+      const said = (faults ?? []).map((/** @type {{ sentence: string }} */ { sentence }) => sentence).join(" ");
+      wrong = ran ? "" : said || "No trial gave a value.";
       say(wrong || "The trials are done");
       show();
     },

@@ -108,7 +108,7 @@ function row(doubt, index) {
   return h(
     "div",
     { class: "doubt-row", role: "group", "aria-label": `Doubt: ${label}` },
-    h("div", { class: "doubt-what" }, text("name", "name", numberLabel(doubt.pointer), "doubt-name"), h("span", { class: "hint" }, `of ${numberLabel(doubt.pointer)}`)),
+    text("name", "name", numberLabel(doubt.pointer), "doubt-name"),
     text(key, key === "readings" ? "readings, one a line" : "how much", key === "readings" ? "−20.13\n−20.15\n−20.12" : "0.3 % or 0.02 dB", "doubt-amount"),
     h(
       "div",
@@ -175,7 +175,7 @@ function correlations(doubts, mine) {
     "div",
     { class: "correlations" },
     rows,
-    mine.length > 1 && h("button", { type: "button", class: "quiet", "data-key": "correlate", click: add }, "Two of them hang together…"),
+    mine.length > 1 && h("button", { type: "button", class: "quiet", "data-key": "correlate", click: add }, "Correlate two of them…"),
     h("p", { class: "fault", id: "correlations-fault", hidden: true }),
   );
 }
@@ -213,7 +213,7 @@ function showWrong(faults) {
     const doubt = doubtsOf(now.texts).inputs[index];
     const usual = now.usual.find(({ name, pointer }) => name === doubt?.name && pointer === doubt?.pointer);
     const understood = Object.entries(now.understood).find(([pointer]) => pointer === `/uncertainty/inputs/${index}/readings`)?.[1];
-    setText(note, [understood, usual?.note].filter(Boolean).join(". "));
+    setText(note, [doubt && `Of ${numberLabel(doubt.pointer)}`, understood, usual?.note].filter(Boolean).join(". "));
   }
 }
 

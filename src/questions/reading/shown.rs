@@ -94,9 +94,9 @@ fn facts(given: &Given, answer: &Answer) -> Vec<Fact> {
 fn uncertainty(answer: &Answer, of: &CertificateUncertainty) -> Vec<Fact> {
     let k = brief(of.coverage_factor, 3);
     let mut facts = vec![
-        Fact::fixed("Expanded uncertainty", of.expanded_percent, 2, "%")
-            .noted(format!("k = {k}, from the certificate alone")),
-        Fact::prefixed("Standard uncertainty", of.standard_w, "W")
+        Fact::fixed("Certificate alone: expanded uncertainty", of.expanded_percent, 2, "%")
+            .noted(format!("k = {k}")),
+        Fact::prefixed("Certificate alone: standard uncertainty", of.standard_w, "W")
             .noted(format!("{} %", significant(of.standard_percent, 2))),
     ];
     // In dB the interval is not symmetric about the value.
@@ -104,7 +104,7 @@ fn uncertainty(answer: &Answer, of: &CertificateUncertainty) -> Vec<Fact> {
         let (down, up) = (low_dbm - answer.power_dbm, of.high_dbm - answer.power_dbm);
         let note = format!("{} dB, +{} dB; k = {k}", fixed(down, 3), fixed(up, 3));
         facts.push(Fact {
-            name: "Interval".to_owned(),
+            name: "Certificate alone: interval".to_owned(),
             figure: format!("{} to {} dBm", fixed(low_dbm, 3), fixed(of.high_dbm, 3)),
             note,
             copy: format!("{low_dbm} to {} dBm", of.high_dbm),
@@ -219,8 +219,8 @@ fn notes(bench: &Bench, given: &Given, answer: &Answer) -> Vec<String> {
     if answer.certificate_uncertainty.is_some() {
         let correlation = certificate.and_then(|certificate| certificate.point_correlation).unwrap_or(1.0);
         notes.push(format!(
-            "The uncertainty is the certificate’s alone, carried to the light’s wavelength with a correlation of {} \
-             between its points. Wavelength, connector, linearity, drift and the rest are not in it.",
+            "What is called “certificate alone” is its uncertainty carried to the light’s wavelength with a correlation \
+             of {} between its points. Wavelength, connector, linearity, drift and the rest are not in it.",
             brief(correlation, 2)
         ));
     }
