@@ -2,8 +2,8 @@
 
 use super::{Extreme, Log, Stated, Summary};
 use crate::quantity::write::{brief, fixed, plus_minus, prefixed, significant};
-use crate::questions::shown::{Fact, Headline, Shown, Table};
-use crate::record::Times;
+use crate::questions::shown::{Fact, Headline, Shown, Table, joined};
+use crate::record::{Role, Times};
 
 /// The log, ready to be shown.
 pub(super) fn shown(log: &Log, by_time: bool) -> Shown {
@@ -80,16 +80,18 @@ fn facts(log: &Log) -> Vec<Fact> {
     facts.extend(
         more.iter().filter(|(_, rows, _)| *rows > 0).map(|(name, rows, note)| count(name, *rows, note)),
     );
+    let time = log.reading.table.columns.iter().find(|column| column.role == Role::Time);
+    let time_unit = time.and_then(|column| column.unit).map_or("", |unit| unit.name());
     if let Some(corrected) = &log.corrected {
-        facts.extend(summed(corrected, "Corrected: "));
+        facts.extend(summed(corrected, "Corrected: ", time_unit));
     }
     if let Some(raw) = &log.raw {
-        facts.extend(summed(raw, "As read: "));
+        facts.extend(summed(raw, "As read: ", time_unit));
     }
     facts
 }
 
-fn summed(of: &Summary, whose: &str) -> Vec<Fact> {
+fn summed(of: &Summary, whose: &str, time_unit: &str) -> Vec<Fact> {
     let mean = Fact::prefixed(&format!("{whose}mean"), of.mean_w, "W");
     let mut facts = vec![match of.mean_dbm {
         Some(dbm) => mean.noted(format!("{} dBm; averaged in W", fixed(dbm, 3))),
@@ -100,8 +102,8 @@ fn summed(of: &Summary, whose: &str) -> Vec<Fact> {
         let fact = Fact::prefixed(&format!("{whose}standard deviation"), deviation_w, "W");
         facts.push(if of.mean_w > 0.0 { fact.noted(format!("{relative} % of the mean")) } else { fact });
     }
-    facts.push(extreme(&format!("{whose}least"), &of.least));
-    facts.push(extreme(&format!("{whose}greatest"), &of.greatest));
+    facts.push(extreme(&format!("{whose}least"), &of.least, time_unit));
+    facts.push(extreme(&format!("{whose}greatest"), &of.greatest, time_unit));
     if let Some(drift_w) = of.drift_w_per_h {
         let fact = Fact::prefixed(&format!("{whose}drift per hour"), drift_w, "W");
         facts.push(match of.drift_percent_per_h {
@@ -114,9 +116,9 @@ fn summed(of: &Summary, whose: &str) -> Vec<Fact> {
     facts
 }
 
-fn extreme(name: &str, of: &Extreme) -> Fact {
+fn extreme(name: &str, of: &Extreme, time_unit: &str) -> Fact {
     let level = of.power_dbm.map_or("no level in dBm".to_owned(), |dbm| format!("{} dBm", fixed(dbm, 3)));
-    let when = of.time.as_ref().map_or(String::new(), |time| format!(", {time}"));
+    let when = of.time.as_ref().map_or(String::new(), |time| format!(", {}", joined(time, time_unit)));
     Fact::prefixed(name, of.power_w, "W").noted(format!("{level}; line {}{when}", whole(of.line)))
 }
 
