@@ -355,7 +355,7 @@ fn bench(form: &str) -> Value {
 }
 
 fn write(bench: &Value, administration: &Value) -> Result<String, Vec<Fault>> {
-    door::write_dcc(&tree(bench), &tree(administration))
+    door::write_dcc(&tree(bench), &tree(administration), None)
 }
 
 #[test]

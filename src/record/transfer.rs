@@ -128,6 +128,12 @@ pub fn read_comparison(text: &str, choices: &Choices, reference: Option<&str>) -
     Ok(Comparison { reference, test, blocks, has_times: time.is_some(), reading })
 }
 
+/// How a text is understood as readings as far as that goes, also where it cannot be read yet. Nothing where it has no
+/// rows of numbers.
+pub fn comparison_layout(text: &str, choices: &Choices) -> Option<Reading> {
+    Sheet::layout(text, choices, &KIND)
+}
+
 /// One reading.
 struct One {
     line: usize,

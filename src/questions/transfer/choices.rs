@@ -2,7 +2,7 @@
 
 use crate::bench::field::Limits;
 use crate::bench::reader::Reader;
-use crate::fault::{Code, Fault, Faults};
+use crate::fault::{Code, Fault};
 use crate::quantity::kind;
 use crate::record::{Choices, is_date};
 use crate::statistics::transfer::Uncertain;
@@ -67,9 +67,8 @@ const KEYS: [&str; 9] = [
 ];
 
 impl TransferChoices {
-    /// Reads choices; what is wrong or missing comes beside what is right.
-    pub fn from_tree(tree: &Tree, pointer: &str) -> (TransferChoices, Faults) {
-        let mut reader = Reader::strict();
+    /// Reads choices; what is wrong or missing is left with the reader.
+    pub fn read(tree: &Tree, pointer: &str, reader: &mut Reader) -> TransferChoices {
         let map = reader.part(Some(tree), pointer, &KEYS).unwrap_or(&Tree::Null);
         let table = map.get("table").unwrap_or(&Tree::Null);
         let table = Choices::from_tree(table, &format!("{pointer}/table"));
@@ -90,7 +89,7 @@ impl TransferChoices {
             Limits::between(1.0, 1e9),
         );
         let contributions =
-            contributions(map.get("contributions"), &format!("{pointer}/contributions"), &mut reader);
+            contributions(map.get("contributions"), &format!("{pointer}/contributions"), reader);
         if date.is_empty() {
             reader.missing(&format!("{pointer}/date"), "Needed: the date of the readings, as 2026-11-30.");
         } else if !is_date(&date) {
@@ -106,7 +105,7 @@ impl TransferChoices {
             let sentence = "Needed: the number of the reference's certificate, on which the new one rests.";
             reader.missing(&format!("{pointer}/reference_certificate"), sentence);
         }
-        let choices = TransferChoices {
+        TransferChoices {
             table,
             reference: Some(reference).filter(|reference| !reference.is_empty()),
             date,
@@ -116,8 +115,7 @@ impl TransferChoices {
             coverage_probability: probability.unwrap_or(USUAL_PROBABILITY),
             reference_degrees_of_freedom: degrees,
             contributions,
-        };
-        (choices, reader.faults)
+        }
     }
 }
 
@@ -142,7 +140,7 @@ fn contributions(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Vec
             Some(standard_percent) => {
                 found.push(Contribution { name, standard_percent, degrees_of_freedom: degrees });
             }
-            None if map.get("standard_percent").is_none_or(Tree::is_null) => {
+            None if is_blank(map.get("standard_percent")) => {
                 let sentence = "Each contribution needs its standard uncertainty in per cent.";
                 reader.missing(&format!("{at}/standard_percent"), sentence);
             }
@@ -150,4 +148,13 @@ fn contributions(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Vec
         }
     }
     found
+}
+
+/// Whether nothing was given, or a text without a letter.
+fn is_blank(given: Option<&Tree>) -> bool {
+    match given {
+        None | Some(Tree::Null) => true,
+        Some(Tree::Text(text)) => text.trim().is_empty(),
+        Some(_) => false,
+    }
 }
