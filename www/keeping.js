@@ -3,7 +3,7 @@
 import { say } from "./copy.js";
 import { byId, inputById } from "./dom.js";
 import { labelOf } from "./fields.js";
-import { change, goodAnswer, questions, state, understoodBench, version } from "./live.js";
+import { asksOf, change, goodAnswer, state, understoodBench, version } from "./live.js";
 import * as notebook from "./notebook.js";
 import { notebookView } from "./notebook-view.js";
 import { load, onForeignChange, save } from "./store.js";
@@ -39,7 +39,7 @@ export function keep() {
   const answer = goodAnswer();
   if (!answer) return;
   const { bench } = understoodBench();
-  const asks = questions.find(({ name }) => name === state.question)?.asks ?? state.question;
+  const asks = asksOf(state.question);
   const when = new Date().toISOString();
   const id = `${when}-${Math.random().toString(36).slice(2, 8)}`;
   setKept([{ id, when, question: state.question, asks, title: state.texts["/title"] ?? "", note: "", version, texts: { ...state.texts }, bench, answer }, ...kept]);

@@ -5,7 +5,7 @@ import { choicesOf, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { addNotes, controls, fill, firstChoices, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
+import { addNotes, controls, fill, firstChoices, form, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
@@ -31,6 +31,16 @@ addNotes(core.fields());
 
 /** @type {{ texts: Texts, history: import("./history.js").History, question: string, mark: Mark, demo: boolean }} */
 export const state = { texts: {}, history: emptyHistory(), question: questions[0]?.name ?? "", mark: "auto", demo: true, ...soundState(load("state", {})) };
+/**
+ * What can be done in the place of a question, with texts of its own: `follow` makes an answer of them, or says what it waits for.
+ *
+ * @typedef {{ name: string, focus: () => void }} Wait
+ * @typedef {{ asks: string, panel: HTMLElement, follow(): { answer: Answer | null, waits: Wait[] }, deeds(): HTMLElement[] }} Job
+ * @type {Map<string, Job>}
+ */
+export const jobs = new Map();
+/** What the one asked asks. */
+export const asksOf = (/** @type {string} */ name) => questions.find((question) => question.name === name)?.asks ?? jobs.get(name)?.asks ?? name;
 /** The last good answer of each question. @type {Map<string, Answer>} */
 const good = new Map();
 /** What a file could not be read for. @type {string[]} */
@@ -59,52 +69,61 @@ export function update() {
   const { texts, mark } = state;
   fill(texts);
   showAlternatives(texts);
+  const job = jobs.get(state.question);
+  for (const [name, { panel }] of jobs) panel.hidden = name !== state.question;
   const question = questions.find(({ name }) => name === state.question) ?? questions[0];
   if (!question) return;
-  const { understood, tables, faults, blocking, answer } = core.follow(question.name, typed(all, texts), mark);
+  const bench = typed(all, texts);
+  const { understood, tables, faults, ...rest } = job ? core.understand(bench, mark) : core.follow(question.name, bench, mark);
   showUnderstood(texts, understood);
-  showTables(texts, tables, changeChoices);
-  showUse(question.fields);
+  showTables(form(), texts, tables, changeChoices);
+  showUse(job ? [] : question.fields);
+  showSummary(showFaults(faults, all, texts));
+  const { answer, waits } = job?.follow() ?? { answer: "answer" in rest ? rest.answer : null, waits: waitsOf("blocking" in rest ? rest.blocking : []) };
+  const name = job ? state.question : question.name;
   if (answer) {
-    good.set(question.name, answer);
+    good.set(name, answer);
     byId("banner").hidden = true;
   }
-  showSummary(showFaults(faults, all, texts));
-  showAnswer(question.name, blocking);
+  showAnswer(name, waits);
   showTools();
   save("state", state);
 }
 
-/** @param {string} question @param {Fault[]} faults */
-function showAnswer(question, faults) {
-  const found = good.get(question);
+/** @param {string} name @param {Wait[]} waits */
+function showAnswer(name, waits) {
+  const found = good.get(name);
   const answer = byId("answer");
   answer.replaceChildren(...(found ? answerView(found, state.mark) : []));
-  const stale = faults.length > 0;
+  const stale = waits.length > 0;
   answer.classList.toggle("stale", stale);
   const line = byId("state-line");
   line.hidden = !stale;
-  const owners = [...new Set(faults.map(({ pointer }) => ownerOf(pointer, all, state.texts)?.name ?? pointer))];
-  const says = found ? "This is the last good answer. It waits for: " : "To answer, the bench still needs: ";
-  if (stale) line.replaceChildren(says, ...joinedBy(faultLinks(faults, owners), ", "), ".");
-  const keepButton = /** @type {HTMLButtonElement | null} */ (document.getElementById("keep"));
-  if (keepButton) keepButton.disabled = stale;
+  const links = waits.map(({ name: says, focus }) => h("button", { type: "button", class: "link", click: focus }, says));
+  const says = found ? "This is the last good answer. It waits for: " : `To answer, ${jobs.has(name) ? "there is" : "the bench"} still need${jobs.has(name) ? "ed" : "s"}: `;
+  if (stale) line.replaceChildren(says, ...joinedBy(links, ", "), ".");
+  const actions = answer.querySelector(".actions");
+  actions?.prepend(...(jobs.get(name)?.deeds() ?? []));
+  for (const button of /** @type {NodeListOf<HTMLButtonElement>} */ (answer.querySelectorAll("#keep, [data-deed]"))) button.disabled = stale;
   const mini = byId("mini");
   mini.hidden = !found;
   setText(mini, found ? `${stale ? "Waiting; last: " : ""}${marked(found.shown.headline.figure, state.mark)}` : "");
 }
 
-/** @param {Fault[]} faults @param {string[]} names */
-function faultLinks(faults, names) {
-  return names.map((name) => {
-    const fault = faults.find(({ pointer }) => (ownerOf(pointer, all, state.texts)?.name ?? pointer) === name);
+/** What stands between a question and its answer, each field once. @param {Fault[]} faults @returns {Wait[]} */
+function waitsOf(faults) {
+  /** @type {Map<string, Wait>} */
+  const waits = new Map();
+  for (const { pointer } of faults) {
+    const owner = ownerOf(pointer, all, state.texts);
+    const name = owner?.name ?? pointer;
     const focus = () => {
-      const owner = fault && ownerOf(fault.pointer, all, state.texts);
       const target = owner?.input ?? owner?.place.closest("[data-part]")?.querySelector("input, select, textarea");
       /** @type {HTMLElement | null | undefined} */ (target)?.focus();
     };
-    return h("button", { type: "button", class: "link", click: focus }, name);
-  });
+    if (!waits.has(name)) waits.set(name, { name, focus });
+  }
+  return [...waits.values()];
 }
 
 /** @param {Node[]} nodes @param {string} between @returns {(Node | string)[]} */
@@ -144,11 +163,14 @@ function stepName(changes) {
   return others.length > 0 ? `${step} and ${others.length} more` : step;
 }
 
-/** @param {string} name @param {Record<string, unknown> | null} choices */
-function changeChoices(name, choices) {
+/** How a table is to be read. @param {string} name @param {Record<string, unknown> | null} choices */
+export function changeChoices(name, choices) {
   const others = forgetting(state.texts, name);
   change(choices ? { ...others, [choicesOf(name)]: JSON.stringify(choices) } : others, null);
 }
+
+/** What was typed elsewhere than on the bench, and stays when another bench is put there. */
+const besideBench = () => Object.fromEntries(Object.entries(state.texts).filter(([name]) => !name.startsWith("/") && !all.some((control) => control.name === name)));
 
 /** Puts a bench into the form. @param {Bench} bench @param {string} name of the step */
 export function put(bench, name) {
@@ -156,7 +178,18 @@ export function put(bench, name) {
     number: (/** @type {string} */ pointer, /** @type {number} */ value) => core.write_number(pointer, value, state.mark),
     table: (/** @type {string} */ pointer) => core.write_table(pointer, bench, state.mark).value ?? "",
   };
-  change({ ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
+  change({ ...besideBench(), ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
+}
+
+/** Puts a certificate on the bench as if it were typed, and leaves the rest. @param {import("./door.js").Certificate} certificate @param {string} name of the step */
+export function putCertificate(certificate, name) {
+  const at = "/meter/certificate";
+  const points = core.write_table(at, { meter: { certificate } }, state.mark).value ?? "";
+  const k = certificate.coverage_factor;
+  const factor = k ? core.write_number(`${at}/coverage_factor`, k, state.mark) : "";
+  // The form stands in the table's header; a correlation was said of the points of the other certificate.
+  const texts = { [`${at}/points`]: points, [`${at}/coverage_factor`]: factor, [`${at}/form`]: "", [`${at}/point_correlation`]: "" };
+  change({ ...forgetting(state.texts, `${at}/points`), ...texts }, null, name);
 }
 
 /** @param {typeof undone} step @param {string} says */

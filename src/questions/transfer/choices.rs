@@ -3,7 +3,7 @@
 use crate::bench::field::Limits;
 use crate::bench::reader::Reader;
 use crate::fault::{Code, Fault};
-use crate::quantity::kind;
+use crate::quantity::kind::{self, Kind};
 use crate::record::{Choices, is_date};
 use crate::statistics::transfer::Uncertain;
 use crate::tree::Tree;
@@ -77,17 +77,14 @@ impl TransferChoices {
         let (reference, date) = (text("reference"), text("date"));
         let (certificate, device, test) =
             (text("reference_certificate"), text("reference_device"), text("test_device"));
-        let mut number = |key: &str, name: &str, limits: Limits| {
+        let mut number = |key: &str, name: &str, kind: &'static Kind, limits: Limits| {
             let at = format!("{pointer}/{key}");
-            reader.of_kind(map.get(key), &at, name, &kind::NUMBER, &limits).map(|number| number.value)
+            reader.of_kind(map.get(key), &at, name, kind, &limits).map(|number| number.value)
         };
-        let probability =
-            number("coverage_probability", "the coverage probability", Limits::between(0.5, 0.9999));
-        let degrees = number(
-            "reference_degrees_of_freedom",
-            "the degrees of freedom of the reference",
-            Limits::between(1.0, 1e9),
-        );
+        let (name, limits) = ("the coverage probability", Limits::between(0.5, 0.9999));
+        let probability = number("coverage_probability", name, &kind::FRACTION, limits);
+        let (name, limits) = ("the degrees of freedom of the reference", Limits::between(1.0, 1e9));
+        let degrees = number("reference_degrees_of_freedom", name, &kind::NUMBER, limits);
         let contributions =
             contributions(map.get("contributions"), &format!("{pointer}/contributions"), reader);
         if date.is_empty() {
@@ -130,12 +127,14 @@ fn contributions(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Vec
         if name.is_empty() {
             reader.missing(&format!("{at}/name"), "Each contribution needs a name.");
         }
-        let mut number = |key: &str, what: &str, limits: Limits| {
+        let mut number = |key: &str, what: &str, kind: &'static Kind, limits: Limits| {
             let place = format!("{at}/{key}");
-            reader.of_kind(map.get(key), &place, what, &kind::NUMBER, &limits).map(|number| number.value)
+            reader.of_kind(map.get(key), &place, what, kind, &limits).map(|number| number.value)
         };
-        let standard = number("standard_percent", "the standard uncertainty", Limits::between(0.0, 100.0));
-        let degrees = number("degrees_of_freedom", "the degrees of freedom", Limits::between(1.0, 1e9));
+        let (what, limits) = ("the standard uncertainty", Limits::between(0.0, 100.0));
+        let standard = number("standard_percent", what, &kind::PERCENT, limits);
+        let (what, limits) = ("the degrees of freedom", Limits::between(1.0, 1e9));
+        let degrees = number("degrees_of_freedom", what, &kind::NUMBER, limits);
         match standard {
             Some(standard_percent) => {
                 found.push(Contribution { name, standard_percent, degrees_of_freedom: degrees });

@@ -242,7 +242,7 @@ impl Given<'_> {
         }
         let limits = Limits::inside(0.0, 1.0);
         let name = "the coverage probability";
-        self.reader.of_kind(given, &at, name, &kind::NUMBER, &limits).map(|number| number.value)
+        self.reader.of_kind(given, &at, name, &kind::FRACTION, &limits).map(|number| number.value)
     }
 
     fn temperature(&mut self, map: &Tree) -> Option<f64> {
