@@ -6,7 +6,7 @@ import { administrationOf, ownerName } from "./dcc-administration.js";
 import { byId, h, setText } from "./dom.js";
 import { fileName, save as saveFile } from "./files.js";
 import { change, state } from "./live.js";
-import { marked, readOff } from "./numbers.js";
+import { marked, signed } from "./numbers.js";
 
 /**
  * @typedef {import("./bench.js").Texts} Texts
@@ -28,6 +28,7 @@ export const isXml = (text) => text.trimStart().startsWith("<");
 export function openDcc(text, from, use) {
   showFound(text, from, {}, null, use);
   if (!OPEN.open) OPEN.showModal();
+  document.getElementById("dcc-wavelength")?.focus();
 }
 
 /**
@@ -40,11 +41,14 @@ export function openDcc(text, from, use) {
 function showFound(text, from, choices, before, use) {
   const { value, faults = [] } = core.read_dcc(text, choices);
   const reading = value ?? before;
-  const again = (/** @type {Record<string, unknown>} */ more) => showFound(text, from, { ...choices, ...more }, reading, use);
+  // From the first choice on, what stands in the other lists is chosen too, and no longer a guess.
+  const { wavelength = null, value: stated = null, form = null } = reading?.taken ?? {};
+  const again = (/** @type {Record<string, unknown>} */ more) => showFound(text, from, { wavelength, value: stated, form, ...choices, ...more }, reading, use);
   const confirm = () => {
     if (!value?.certificate) return;
     OPEN.close();
-    use({ certificate: value.certificate, identifier: value.identifier, item: value.item });
+    const { form, coverage_factor, points } = value.certificate;
+    use({ certificate: { form, coverage_factor, points }, identifier: value.identifier, item: value.item });
     say(`Certificate ${value.identifier || from} taken over`);
   };
   const place = byId("dcc-found");
@@ -75,20 +79,21 @@ function columns({ quantities, taken }, choices, again) {
     quantities
       .filter(({ kind }) => kinds.includes(kind))
       .map(({ index, name, ref_type: type, place, unit, first, last, count }) => /** @type {[string, string]} */ ([String(index), `${name || type || `quantity ${index + 1}`}, ${count} × ${unit}:${span(first, last)}${place ? ` (${place})` : ""}`]));
-  const index = (/** @type {string} */ key) => (/** @type {string} */ value) => again({ [key]: value === "" ? null : Number(value) });
-  const chosen = (/** @type {number | null} */ index) => (index === null ? "" : String(index));
+  const shown = (/** @type {"wavelength" | "value" | "expanded" | "form"} */ key) => /** @type {any} */ (choices[key] ?? taken[key]);
+  const chosen = (/** @type {number | string | null | undefined} */ index) => String(index ?? "");
   const values = named(["responsivity", "ratio"]);
-  const stated = quantities.find(({ index: one }) => one === taken.value)?.has_uncertainty;
-  const uncertainty = choices.expanded === "none" ? "none" : chosen(taken.expanded);
+  const stated = quantities.find(({ index: one }) => one === shown("value"))?.has_uncertainty;
+  const uncertainty = chosen(shown("expanded"));
   const attached = stated ? "as stated with the values" : "none is stated with the values";
   const expanded = (/** @type {string} */ value) => again({ expanded: value === "none" ? value : value === "" ? null : Number(value) });
   return h(
     "div",
     { class: "confirm" },
     h("p", { class: "small" }, "There is no agreed vocabulary for these certificates, so this is a guess from units and names. Confirm it or choose."),
-    pick("dcc-wavelength", "Wavelength", [["", "choose…"], ...named(["length"])], chosen(taken.wavelength), index("wavelength")),
-    pick("dcc-value", "Value", [["", "choose…"], ...values], chosen(taken.value), index("value")),
-    pick("dcc-form-of-value", "which is a", [["", "choose…"], ...Object.entries(FORMS)], taken.form ?? "", (value) => again({ form: value || null })),
+    pick("dcc-wavelength", "Wavelength", [["", "choose…"], ...named(["length"])], chosen(shown("wavelength")), (value) => again({ wavelength: value === "" ? null : Number(value) })),
+    // What another value is must be told anew.
+    pick("dcc-value", "Value", [["", "choose…"], ...values], chosen(shown("value")), (value) => again({ value: value === "" ? null : Number(value), form: null })),
+    pick("dcc-form-of-value", "which is a", [["", "choose…"], ...Object.entries(FORMS)], shown("form") ?? "", (value) => again({ form: value || null })),
     pick("dcc-expanded", "Uncertainty", [["", attached], ...values, ["none", "take none"]], uncertainty, expanded),
   );
 }
@@ -100,7 +105,8 @@ function pick(id, label, options, value, choose) {
   return h("div", { class: "field" }, h("label", { for: id }, label), select);
 }
 
-const figure = (/** @type {number} */ value) => readOff(value, 5, state.mark);
+/** With the digits it has, and not those of a conversion. @param {number} value */
+const figure = (value) => marked(signed(String(Number(value.toPrecision(8)))), state.mark);
 
 /** The points that would be taken. @param {DccReading} reading */
 function preview({ certificate, notes }) {

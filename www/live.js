@@ -102,8 +102,10 @@ function showAnswer(name, waits) {
   const links = waits.map(({ name: says, focus }) => h("button", { type: "button", class: "link", click: focus }, says));
   const says = found ? "This is the last good answer. It waits for: " : `To answer, ${jobs.has(name) ? "there is" : "the bench"} still need${jobs.has(name) ? "ed" : "s"}: `;
   if (stale) line.replaceChildren(says, ...joinedBy(links, ", "), ".");
-  const actions = answer.querySelector(".actions");
-  actions?.prepend(...(jobs.get(name)?.deeds() ?? []));
+  const deeds = jobs.get(name)?.deeds() ?? [];
+  answer.querySelector(".actions")?.prepend(...deeds);
+  // One thing is the main one.
+  if (deeds.length > 0) document.getElementById("keep")?.classList.remove("main");
   for (const button of /** @type {NodeListOf<HTMLButtonElement>} */ (answer.querySelectorAll("#keep, [data-deed]"))) button.disabled = stale;
   const mini = byId("mini");
   mini.hidden = !found;
@@ -170,7 +172,7 @@ export function changeChoices(name, choices) {
 }
 
 /** What was typed elsewhere than on the bench, and stays when another bench is put there. */
-const besideBench = () => Object.fromEntries(Object.entries(state.texts).filter(([name]) => !name.startsWith("/") && !all.some((control) => control.name === name)));
+export const besideBench = () => Object.fromEntries(Object.entries(state.texts).filter(([name]) => !name.startsWith("/") && !all.some((control) => control.name === name)));
 
 /** Puts a bench into the form. @param {Bench} bench @param {string} name of the step */
 export function put(bench, name) {

@@ -9,7 +9,7 @@ import { firstChoices, form, inputOf, labelOf } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
-import { change, jobs, put, putCertificate, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { besideBench, change, jobs, put, putCertificate, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
 import { prepareTransfer } from "./transfer.js";
@@ -120,7 +120,7 @@ byId("bench-save").addEventListener("click", saveBench);
 byId("notebook-save").addEventListener("click", () => saveFile("leastlight.notebook.json", "application/json", notebookText()));
 byId("bench-clear").addEventListener("click", () => {
   state.demo = false;
-  change({ ...firstChoices(), [DETECTOR_TYPE]: "pin" }, null, "Started empty");
+  change({ ...besideBench(), ...firstChoices(), [DETECTOR_TYPE]: "pin" }, null, "Started empty");
   inputOf("/source/wavelength_nm")?.focus();
 });
 byId("undo").addEventListener("click", () => walk(undone, "Undone"));

@@ -19,7 +19,7 @@ const ROLES = {
   correction_factor: { says: "correction factor, true over shown", units: ["1", "%", "dB"] },
   deviation: { says: "deviation of the reading", units: ["%", "dB"] },
   expanded: { says: "expanded uncertainty", units: ["%", "dB", "A/W", "mA/W", "1"] },
-  spectral_power: { says: "power per nm", units: ["dBm/nm", "dBm", "dB", "W/nm", "mW/nm", "µW/nm", "nW/nm", "W", "mW", "µW", "nW", "pW", "1", "%"] },
+  spectral_power: { says: "power", units: ["dBm/nm", "dBm", "dB", "W/nm", "mW/nm", "µW/nm", "nW/nm", "W", "mW", "µW", "nW", "pW", "1", "%"] },
   detector: { says: "which meter", units: [] },
   power: { says: "reading", units: ["dBm", "W", "mW", "µW", "nW", "pW"] },
   time: { says: "time", units: ["s"] },
@@ -35,7 +35,7 @@ const COLUMNS = {
 };
 
 /** Units that their own sign does not explain. @type {Record<string, string>} */
-const EXPLAINED = { 1: "1 (linear, any scale)", dB: "dB (relative level)" };
+const EXPLAINED = { 1: "1, linear", dB: "dB, relative" };
 
 /** Rows named one by one; of more, only how many. */
 const MOST_ROWS = 12;

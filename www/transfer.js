@@ -95,7 +95,7 @@ function offerLabels(faults, transfer) {
   const select = /** @type {HTMLSelectElement} */ (byId("transfer-reference"));
   const options = ["", ...all];
   if (options.join("\n") === [...select.options].map(({ value }) => value).join("\n")) return;
-  select.replaceChildren(...options.map((label) => h("option", { value: label }, label || "as the table says")));
+  select.replaceChildren(...options.map((label) => h("option", { value: label }, label || "told by its name")));
 }
 
 /** @param {Fault[]} faults @returns {import("./live.js").Wait[]} */
@@ -113,7 +113,8 @@ function showFaults(faults) {
     place.hidden = !own;
     place.classList.toggle("missing", !!own?.every(({ code }) => code === "missing"));
     setText(place, own ? [...new Set(own.map(({ sentence }) => sentence))].join(" ") : "");
-    if (own) input.setAttribute("aria-invalid", "true");
+    // What is only not there yet is no mistake.
+    if (own?.some(({ code }) => code !== "missing")) input.setAttribute("aria-invalid", "true");
     else input.removeAttribute("aria-invalid");
   }
   return [...by.keys()].map((name) => ({ name: labelOf(name), focus: () => document.getElementsByName(name)[0]?.focus() }));

@@ -40,7 +40,7 @@ pub struct ReadBlock {
 }
 
 const KIND: Kind = Kind {
-    name: "A transfer calibration",
+    name: "A table of readings",
     words: &[
         (Role::Power, &["reading", "indicat", "anzeige", "lecture", "lectura"]),
         (
