@@ -390,6 +390,30 @@ fn what_is_written_is_read_back() {
 }
 
 #[test]
+fn uncertainties_can_be_left_out_by_choice() {
+    let text = write(&bench("responsivity"), &administration()).expect("a file");
+    let found = chosen(&text, json!({ "expanded": "none" })).expect("a certificate");
+    let certificate = found.certificate.expect("a certificate");
+    assert!(certificate.points.iter().all(|point| point.expanded_percent.is_none()));
+    assert_eq!((certificate.coverage_factor, found.taken.expanded), (None, None));
+}
+
+#[test]
+fn numbers_of_the_administration_may_be_typed() {
+    let mut typed = administration();
+    typed["temperature_c"] = json!("23,1 °C");
+    typed["coverage_probability"] = json!("95,45 %");
+    let write = |given: &Value, mark| door::write_dcc(&tree(&bench("responsivity")), &tree(given), mark);
+    let text = write(&typed, Some("auto")).expect("a file");
+    assert!(text.contains("<si:value>23.1</si:value>"), "{text}");
+    assert!(text.contains("<si:coverageProbabilityXMLList>0.9545</"), "{text}");
+    assert_eq!(write(&typed, None).expect_err("texts are no numbers").len(), 2);
+    typed["coverage_probability"] = json!(" ");
+    let faults = write(&typed, Some("auto")).expect_err("a blank text is none");
+    assert_eq!((faults.len(), faults[0].code), (1, Code::Missing));
+}
+
+#[test]
 fn nothing_is_made_up_for_what_is_missing() {
     let faults = write(&bench("responsivity"), &json!({})).expect_err("nothing was said");
     let mut found: Vec<(&str, Code)> =

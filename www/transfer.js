@@ -1,12 +1,12 @@
 /** Calibrating a meter against another: a job in the place of a question, with texts of its own. */
 
-import { parsedChoices } from "./bench.js";
-import { NAME as CONTRIBUTIONS, contributionsOf, listContributions } from "./contributions.js";
+import { FACTOR, READINGS, REFERENCE, asked, isPlain, ownerName } from "./comparison.js";
+import { listContributions } from "./contributions.js";
 import { say } from "./copy.js";
 import { core } from "./core.js";
 import { isXml, openDcc, saveDcc } from "./dcc.js";
 import { byId, h, setText } from "./dom.js";
-import { labelOf } from "./fields.js";
+import { labelOf, worthSaying } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { change, changeChoices, jobs, putCertificate, state, understoodBench } from "./live.js";
 import { closed } from "./history.js";
@@ -20,9 +20,6 @@ import { forgetting, showTables } from "./tables.js";
  * @typedef {HTMLInputElement | HTMLSelectElement | HTMLTextAreaElement} Input
  */
 
-const REFERENCE = "transfer/reference_points";
-const READINGS = "transfer/readings";
-const FACTOR = "transfer/coverage_factor";
 const FORM = /** @type {HTMLFormElement} */ (byId("transfer-form"));
 
 /** The last result that was good. @type {Transfer | null} */
@@ -31,47 +28,12 @@ let last = null;
 /** @returns {Input[]} the controls that bear a name of this job, in order */
 const inputs = () => /** @type {Input[]} */ ([...FORM.elements]).filter(({ name }) => name?.startsWith("transfer/"));
 
-/** Those that hold one text each; the contributions are one list. @param {Input} input */
-const isPlain = ({ name }) => name?.startsWith("transfer/") && !name.startsWith(`${CONTRIBUTIONS}/`);
-
-/** What the core is asked, out of the texts. @param {Texts} texts */
-export function asked(texts) {
-  const given = (/** @type {string} */ key) => texts[`transfer/${key}`] ?? "";
-  const table = (/** @type {string} */ name) => parsedChoices(texts, name);
-  const choices = table(REFERENCE);
-  const certificate = { table: { text: texts[REFERENCE] ?? "", ...(choices && { choices }) }, coverage_factor: texts[FACTOR] ?? "" };
-  return {
-    readings: texts[READINGS] ?? "",
-    bench: { meter: (texts[REFERENCE] ?? "").trim() ? { certificate } : null },
-    choices: {
-      table: table(READINGS),
-      reference: given("reference"),
-      date: given("date"),
-      reference_certificate: given("reference_certificate"),
-      reference_device: given("reference_device"),
-      test_device: given("test_device"),
-      coverage_probability: given("coverage_probability") || null,
-      reference_degrees_of_freedom: given("reference_degrees_of_freedom"),
-      contributions: contributionsOf(texts).map((one) => ({ ...one })),
-    },
-  };
-}
-
-/** The control that owns a fault. @param {string} pointer @returns {string} */
-export function ownerName(pointer) {
-  const [, at = "", key = "", index = "", field = ""] = pointer.split("/");
-  if (at === "choices" && key === "contributions") return `${CONTRIBUTIONS}/${index}/${field || "name"}`;
-  if (at === "choices" && key !== "table") return `transfer/${key}`;
-  if (pointer.startsWith("/meter/certificate/coverage_factor")) return FACTOR;
-  return at === "meter" ? REFERENCE : READINGS;
-}
-
 function follow() {
   const { readings, bench, choices } = asked(state.texts);
   listContributions(state.texts, change);
   const { understood, tables, faults, transfer } = core.follow_transfer(readings, bench, choices, state.mark);
   offerLabels(faults, transfer);
-  for (const input of inputs().filter(isPlain)) {
+  for (const input of inputs().filter(({ name }) => isPlain(name))) {
     const text = state.texts[input.name] ?? (input instanceof HTMLSelectElement ? (input.options[0]?.value ?? "") : "");
     if (input.value !== text) input.value = text;
   }
@@ -80,7 +42,7 @@ function follow() {
   for (const input of inputs()) {
     const pointer = Object.keys(understood).find((one) => ownerName(one) === input.name);
     const line = document.getElementById(`${input.id}-understood`);
-    if (line) setText(line, pointer && understood[pointer] !== input.value ? (understood[pointer] ?? "") : "");
+    if (line) setText(line, worthSaying(input.value, (pointer && understood[pointer]) || ""));
   }
   if (transfer) last = transfer;
   return { answer: transfer && { shown: transfer.shown, curves: [], certificate: transfer.certificate, history: transfer.history }, waits };
@@ -187,7 +149,7 @@ export function prepareTransfer() {
   }
   FORM.addEventListener("input", (event) => {
     const input = /** @type {Input} */ (event.target);
-    if (!isPlain(input)) return;
+    if (!isPlain(input.name)) return;
     const { name, value } = input;
     if (name === REFERENCE && isXml(value)) {
       input.value = state.texts[name] ?? "";

@@ -187,7 +187,8 @@ for (const engine of ENGINES) {
             await choose("#transfer-reference", "A");
             await choose("#transfer-add", "0");
             await paste("transfer/contributions/0/standard_percent", "0,4 %");
-            const bench = { meter: { certificate: { ...door.demo().meter.certificate } } };
+            const { form, coverage_factor, points } = door.read_dcc(person.dcc).value.certificate;
+            const bench = { meter: { certificate: { form, coverage_factor, points } } };
             const contributions = [{ name: await person.run(() => document.getElementsByName("transfer/contributions/0/name")[0].value), standard_percent: 0.4 }];
             const { value } = door.transfer_calibration(READINGS, bench, { reference: "A", date: "2026-11-30", reference_certificate: "AR-2026-017", contributions });
             await headlineBecomes(value.shown.headline.figure);
