@@ -332,6 +332,15 @@ fn what_is_no_certificate_is_refused_with_its_place() {
     assert!(read(&deep).is_err());
 }
 
+#[test]
+fn a_file_that_nests_without_end_does_no_harm() {
+    let levels = 100_000;
+    let deep = format!("{}{}", "<dcc:list>".repeat(levels), "</dcc:list>".repeat(levels));
+    // Refused or read, but neither a crash nor a long wait.
+    let _ = read(&file("3.3.0", &deep));
+    let _ = read(&"<a>".repeat(levels));
+}
+
 fn administration() -> Value {
     json!({
         "unique_identifier": "AR-2026-017", "language": "en",
