@@ -21,6 +21,9 @@ const OPEN = /** @type {HTMLDialogElement} */ (byId("dcc-open"));
 const SAVE = /** @type {HTMLDialogElement} */ (byId("dcc-save"));
 const FORM = /** @type {HTMLFormElement} */ (byId("dcc-form"));
 
+/** Units of the format as the trade writes them; others are shown as they stand in the file. @type {Record<string, string>} */
+const UNITS = { "\\nano\\metre": "nm", "\\micro\\metre": "µm", "\\metre": "m", "\\ampere\\watt\\tothe{-1}": "A/W", "\\ampere\\per\\watt": "A/W", "\\percent": "%", "\\one": "plain numbers" };
+
 /** No table begins like this. @param {string} text */
 export const isXml = (text) => text.trimStart().startsWith("<");
 
@@ -78,7 +81,7 @@ function columns({ quantities, taken }, choices, again) {
   const named = (/** @type {string[]} */ kinds) =>
     quantities
       .filter(({ kind }) => kinds.includes(kind))
-      .map(({ index, name, ref_type: type, place, unit, first, last, count }) => /** @type {[string, string]} */ ([String(index), `${name || type || `quantity ${index + 1}`}, ${count} × ${unit}:${span(first, last)}${place ? ` (${place})` : ""}`]));
+      .map(({ index, name, ref_type: type, place, unit, first, last, count }) => /** @type {[string, string]} */ ([String(index), `${name || type || `quantity ${index + 1}`}, ${count} in ${UNITS[unit] ?? unit}:${span(first, last)}${place ? ` (${place})` : ""}`]));
   const shown = (/** @type {"wavelength" | "value" | "expanded" | "form"} */ key) => /** @type {any} */ (choices[key] ?? taken[key]);
   const chosen = (/** @type {number | string | null | undefined} */ index) => String(index ?? "");
   const values = named(["responsivity", "ratio"]);
