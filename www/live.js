@@ -1,7 +1,7 @@
 /** From what was typed to what is shown: the state of the page, and everything that follows from it. */
 
 import { answerView } from "./answer.js";
-import { choicesOf, textsOf, typed } from "./bench.js";
+import { choicesOf, ofAreas, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
@@ -172,7 +172,7 @@ export function changeChoices(name, choices) {
 }
 
 /** What was typed elsewhere than on the bench, and stays when another bench is put there. */
-export const besideBench = () => Object.fromEntries(Object.entries(state.texts).filter(([name]) => !name.startsWith("/") && !all.some((control) => control.name === name)));
+export const besideBench = () => ofAreas(state.texts, (area) => area !== "");
 
 /** Puts a bench into the form. @param {Bench} bench @param {string} name of the step */
 export function put(bench, name) {

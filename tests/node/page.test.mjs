@@ -4,7 +4,7 @@ import assert from "node:assert/strict";
 import { describe, test } from "node:test";
 
 import { percent } from "../../www/answer.js";
-import { choicesOf, takesPart, textsOf, typed } from "../../www/bench.js";
+import { areaOf, choicesOf, ofAreas, takesPart, textsOf, typed } from "../../www/bench.js";
 import { scaleOf } from "../../www/chart/axis.js";
 import { bestPlace, overlap } from "../../www/chart/labels.js";
 import { FACTOR, READINGS, REFERENCE, asked, ownerName } from "../../www/comparison.js";
@@ -54,6 +54,12 @@ describe("a typed bench", () => {
         assert.equal(texts["/path/loss_db"], "3.5");
         assert.equal(typed(controls, texts).detector.responsivity.a_per_w, "0.9");
     });
+});
+
+test("texts of the bench and of a job are told apart by their names", () => {
+    for (const name of ["/path/loss_db", "/meter/certificate/points#choices", "detector-type"]) assert.equal(areaOf(name), "");
+    assert.equal(areaOf("transfer/readings#choices"), "transfer");
+    assert.deepEqual(ofAreas({ "/title": "a", "transfer/date": "b", "dcc/language": "c" }, (area) => area !== "dcc"), { "/title": "a", "transfer/date": "b" });
 });
 
 describe("undo", () => {
