@@ -48,9 +48,53 @@ fn certificate_of_10_000_rows(bencher: Bencher) {
     bencher.bench(|| door::read_certificate(black_box(&text), &Tree::Null));
 }
 
+/// A million rows of a log, 44 MB: read, corrected and summed up; then written as well.
+#[divan::bench(args = [false, true], sample_count = 10)]
+fn log_of_1_000_000_rows(bencher: Bencher, written: bool) {
+    let mut text = "Time;Wavelength (nm);Power (dBm);Range;Status\n".to_owned();
+    for row in 0..1_000_000_u32 {
+        let (second, level) = (row / 10, -20.0 - f64::from(row.wrapping_mul(2_654_435_761) >> 22) * 1e-4);
+        let (day, hour, minute) = (1 + second / 86_400, second / 3600 % 24, second / 60 % 60);
+        text += &format!(
+            "2026-12-{day:02}T{hour:02}:{minute:02}:{:02}.{}00;1310;{level:.3};-20;OK\n",
+            second % 60,
+            row % 10
+        );
+    }
+    let mut options = Tree::Map(vec![("bench".to_owned(), door::demo())]);
+    if let (true, Tree::Map(entries)) = (written, &mut options) {
+        entries.push(("corrected".to_owned(), Tree::Map(Vec::new())));
+    }
+    bencher.bench(|| door::read_log(black_box(&text), &options));
+}
+
 /// What happens at each keystroke before the question: all typed texts are read.
 #[divan::bench]
 fn understanding_a_typed_bench(bencher: Bencher) {
     let bench = door::demo();
     bencher.bench(|| door::understand(black_box(&bench), "auto"));
+}
+
+/// Trials in a run, as in the page.
+const TRIALS: usize = 1_000_000;
+
+fn trials(bencher: Bencher, question: &str) {
+    let options = Tree::Map(vec![("trials".to_owned(), Tree::Bool(true))]);
+    bencher.bench(|| {
+        let mut run = door::Run::begin(question, black_box(&door::demo()), &options).ok()?;
+        run.advance(TRIALS);
+        Some(run.finish())
+    });
+}
+
+/// A million trials of the demonstration bench's reading, intervals and histogram included.
+#[divan::bench(sample_count = 10, sample_size = 1)]
+fn a_million_trials_of_the_reading(bencher: Bencher) {
+    trials(bencher, "reading");
+}
+
+/// A million trials of its sensitivity.
+#[divan::bench(sample_count = 1, sample_size = 1)]
+fn a_million_trials_of_the_sensitivity(bencher: Bencher) {
+    trials(bencher, "sensitivity");
 }

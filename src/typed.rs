@@ -2,9 +2,13 @@
 
 use crate::bench::Bench;
 use crate::bench::detector::Responsivity;
+use crate::bench::field::field;
 use crate::bench::reader::Reader;
+use crate::bench::uncertainty::{Amount, UncertainInput};
 use crate::fault::{Fault, Faults};
+use crate::quantity::kind;
 use crate::quantity::number::DecimalMark;
+use crate::quantity::write;
 use crate::record::{
     self, Choices, Reading, read_certificate, read_responsivity, read_spectrum, spectrum_layout,
     write_certificate_points, write_responsivity_points, write_spectrum_points,
@@ -179,6 +183,72 @@ pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
             })
         }
         _ => String::new(),
+    }
+}
+
+/// The doubts of a bench as they would be typed: texts for amounts, with their units; nothing where there are none.
+pub fn write_doubts(bench: &Bench, mark: DecimalMark) -> Tree {
+    let Some(stated) = &bench.uncertainty else { return Tree::Null };
+    let marked =
+        |text: String| Tree::Text(if mark == DecimalMark::Comma { text.replace('.', ",") } else { text });
+    let number = |value: f64| marked(write::plain(value));
+    let entry = |key: &str, value: Tree| (key.to_owned(), value);
+    let input = |input: &UncertainInput| {
+        let amount = |value: f64| marked(amount_text(input, value));
+        let mut entries = vec![
+            entry("pointer", Tree::from(input.pointer.as_str())),
+            entry("name", Tree::from(input.name.as_str())),
+        ];
+        match &input.amount {
+            Amount::Standard { standard } => entries.push(entry("standard", amount(*standard))),
+            Amount::HalfWidth { half_width } => entries.push(entry("half_width", amount(*half_width))),
+            Amount::Expanded { expanded, coverage_factor } => {
+                entries.push(entry("expanded", amount(*expanded)));
+                entries.push(entry("coverage_factor", number(*coverage_factor)));
+            }
+            Amount::Readings { readings } => {
+                let kind = field(&input.pointer).map(|field| field.kind);
+                let text = |value: &f64| {
+                    kind.map_or_else(|| write::plain(*value), |kind| write::exact(*value, kind))
+                };
+                entries.push(entry(
+                    "readings",
+                    marked(readings.iter().map(text).collect::<Vec<_>>().join("\n")),
+                ));
+            }
+        }
+        entries.push(entry("distribution", Tree::from(input.distribution.word())));
+        entries.extend(input.times.map(|times| entry("times", number(times))));
+        entries.extend(input.degrees_of_freedom.map(|freedom| entry("degrees_of_freedom", number(freedom))));
+        Tree::Map(entries)
+    };
+    let correlations = stated
+        .correlations
+        .iter()
+        .map(|(i, j, r)| Tree::List(vec![Tree::Number(*i as f64), Tree::Number(*j as f64), number(*r)]));
+    let mut entries = vec![
+        entry("of", stated.of.as_deref().map_or(Tree::Null, Tree::from)),
+        entry("inputs", Tree::List(stated.inputs.iter().map(input).collect())),
+        entry("correlations", Tree::List(correlations.collect())),
+        entry("coverage_probability", Tree::Number(stated.coverage_probability)),
+    ];
+    entries.extend(stated.monte_carlo.map(|run| {
+        let run = vec![
+            entry("trials", Tree::Text(run.trials.to_string())),
+            entry("seed", Tree::Text(run.seed.to_string())),
+            entry("adaptive", Tree::Bool(run.adaptive)),
+        ];
+        entry("monte_carlo", Tree::Map(run))
+    }));
+    Tree::Map(entries)
+}
+
+fn amount_text(input: &UncertainInput, value: f64) -> String {
+    match field(&input.pointer) {
+        _ if input.relative => write::percent(value),
+        _ if input.decibel => write::exact(value, &kind::DECIBEL),
+        Some(field) => write::exact(value, kind::difference(field.kind)),
+        None => write::plain(value),
     }
 }
 

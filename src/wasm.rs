@@ -2,6 +2,8 @@
 
 use crate::door;
 use crate::fault::{Code, Fault, Faults};
+use crate::questions::log::{Log, LogReader};
+use crate::record::Refused;
 use crate::tree::Tree;
 use serde::Serialize;
 use serde_wasm_bindgen::Serializer;
@@ -15,6 +17,44 @@ pub fn ask(question: JsValue, bench: JsValue, options: JsValue) -> Result<JsValu
         question_name(&question)
             .and_then(|name| door::ask(&name, &tree(bench, "")?, &tree(options, "/options")?)),
     )
+}
+
+/// A question that is answered but for its trials, which go in slices.
+#[wasm_bindgen]
+pub struct Run(door::Run);
+
+#[wasm_bindgen]
+impl Run {
+    /// Answers all but the trials: `{ value }`, a [`Run`], or `{ faults }`.
+    pub fn begin(question: &str, bench: JsValue, options: JsValue) -> Result<JsValue, JsValue> {
+        let begun =
+            tree(bench, "").and_then(|bench| door::Run::begin(question, &bench, &tree(options, "/options")?));
+        let (name, value) = match begun {
+            Ok(run) => ("value", JsValue::from(Run(run))),
+            Err(faults) => ("faults", out(&faults)?),
+        };
+        named(name, &value)
+    }
+
+    /// Goes on by so many trials.
+    pub fn advance(&mut self, trials: u32) {
+        self.0.advance(trials as usize);
+    }
+
+    /// Trials so far.
+    pub fn count(&self) -> f64 {
+        self.0.count() as f64
+    }
+
+    /// Whether nothing is left to be done.
+    pub fn done(&self) -> bool {
+        self.0.done()
+    }
+
+    /// The answer with what the trials gave so far.
+    pub fn finish(self) -> Result<JsValue, JsValue> {
+        out(&self.0.finish())
+    }
 }
 
 /// All questions.
@@ -93,6 +133,67 @@ pub fn read_dcc(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {
     outcome("value", tree(choices, "/choices").and_then(|choices| door::read_dcc(text, &choices)))
 }
 
+/// `{ value }`, or `{ faults }` and, where the table itself was understood, its `reading` beside them.
+#[wasm_bindgen]
+pub fn read_log(text: &str, options: JsValue) -> Result<JsValue, JsValue> {
+    match tree(options, "/options") {
+        Ok(options) => log_outcome(door::read_log(text, &options)),
+        Err(faults) => log_outcome(Err(Refused { faults, reading: None })),
+    }
+}
+
+/// A log that arrives in slices of bytes: `push` them, `take` what was written of the corrected log, `finish`.
+#[wasm_bindgen]
+pub struct LogSlices {
+    reader: Result<LogReader, Faults>,
+}
+
+#[wasm_bindgen]
+impl LogSlices {
+    /// With options as for `read_log`.
+    #[wasm_bindgen(constructor)]
+    pub fn new(options: JsValue) -> LogSlices {
+        LogSlices { reader: tree(options, "/options").map(|options| LogReader::new(&options)) }
+    }
+
+    /// Takes the next bytes, which are UTF-8.
+    pub fn push(&mut self, bytes: &[u8]) {
+        if let Ok(reader) = &mut self.reader {
+            reader.push(bytes);
+        }
+    }
+
+    /// What was written of the corrected log since the last time.
+    pub fn take(&mut self) -> Vec<u8> {
+        self.reader.as_mut().map(LogReader::take).unwrap_or_default()
+    }
+
+    /// How many rows have been read so far.
+    pub fn rows(&self) -> f64 {
+        self.reader.as_ref().map_or(0.0, |reader| reader.rows() as f64)
+    }
+
+    /// Whether further bytes are of no use, because the log cannot be read.
+    pub fn is_refused(&self) -> bool {
+        self.reader.as_ref().map_or(true, LogReader::is_refused)
+    }
+
+    /// As `read_log`.
+    pub fn finish(self) -> Result<JsValue, JsValue> {
+        log_outcome(match self.reader {
+            Ok(reader) => reader.finish(),
+            Err(faults) => Err(Refused { faults, reading: None }),
+        })
+    }
+}
+
+fn log_outcome(result: Result<Log, Refused>) -> Result<JsValue, JsValue> {
+    match result {
+        Ok(log) => outcome("value", Ok(log)),
+        Err(refused) => out(&refused),
+    }
+}
+
 /// `{ value }`, the text of a file, or `{ faults }`.
 #[wasm_bindgen]
 pub fn write_dcc(
@@ -122,6 +223,18 @@ pub fn write_number(pointer: &str, value: f64, decimal_mark: &str) -> String {
 #[wasm_bindgen]
 pub fn write_table(pointer: &str, bench: JsValue, decimal_mark: &str) -> Result<JsValue, JsValue> {
     outcome("value", tree(bench, "").and_then(|bench| door::write_table(pointer, &bench, decimal_mark)))
+}
+
+/// The doubts of a bench as they would be typed: `{ value }` or `{ faults }`.
+#[wasm_bindgen]
+pub fn write_doubts(bench: JsValue, decimal_mark: &str) -> Result<JsValue, JsValue> {
+    outcome("value", tree(bench, "").and_then(|bench| door::write_doubts(&bench, decimal_mark)))
+}
+
+/// The doubts that are usual, to be taken and changed.
+#[wasm_bindgen]
+pub fn usual_doubts() -> Result<JsValue, JsValue> {
+    out(&door::usual_doubts())
 }
 
 /// The demonstration bench.
@@ -155,8 +268,12 @@ fn outcome<T: Serialize>(name: &str, result: Result<T, Faults>) -> Result<JsValu
         Ok(value) => (name, out(&value)?),
         Err(faults) => ("faults", out(&faults)?),
     };
+    named(name, &value)
+}
+
+fn named(name: &str, value: &JsValue) -> Result<JsValue, JsValue> {
     let object = js_sys::Object::new();
-    js_sys::Reflect::set(&object, &name.into(), &value)?;
+    js_sys::Reflect::set(&object, &name.into(), value)?;
     Ok(object.into())
 }
 

@@ -121,6 +121,23 @@ fn typed_texts_become_a_bench_and_faults_keep_their_place() {
 }
 
 #[wasm_bindgen_test]
+fn a_log_crosses_in_slices() {
+    let options = JSON::parse(r#"{ "corrected": {} }"#).expect("JSON");
+    let mut log = wasm::LogSlices::new(options.clone());
+    for slice in ["Time (s);Power (dBm)\n0;-2", "0\n1;9.91E37\n"] {
+        log.push(slice.as_bytes());
+    }
+    let value = get(&log.finish().expect("no throw"), "value");
+    assert_eq!(get(&value, "counts/no_reading").as_f64(), Some(1.0));
+    assert!(get(&value, "text").as_string().expect("asked for").contains("no reading"));
+    assert!(get(&value, "correction").is_null());
+    let refused = wasm::read_log("Power\n1\n", options).expect("no throw");
+    assert_eq!(pointers(&refused), ["/choices/columns"]);
+    assert!(get(&refused, "reading/columns/0/role").as_string().is_some());
+    assert_eq!(pointers(&wasm::read_log("1", JsValue::from_f64(3.0)).expect("no throw")), ["/options"]);
+}
+
+#[wasm_bindgen_test]
 fn questions_fields_and_version_are_there() {
     assert!(Array::from(&wasm::questions().expect("no throw")).length() >= 2);
     assert!(Array::from(&wasm::fields().expect("no throw")).length() > 20);

@@ -40,6 +40,7 @@ function headline(shown, mark) {
     "div",
     { class: "headline" },
     h("p", { class: "headline-text" }, h("span", { class: "headline-figure" }, figure), " ", marked(shown.headline.sentence, mark)),
+    shown.headline.uncertainty && h("p", { class: "headline-doubt" }, marked(shown.headline.uncertainty, mark)),
     shown.cautions.length > 0 && h("p", { class: "caution cautions-named" }, "Before you touch anything: ", h("a", { href: "#cautions", click: toCautions }, shown.cautions.map(({ about }) => about.toLowerCase()).join(", "))),
     h(
       "div",
@@ -73,7 +74,7 @@ function copyButton(figure, si, label) {
 }
 
 /** @param {Shown} shown @param {Mark} mark */
-function doubts({ doubts: list }, mark) {
+export function doubts({ doubts: list }, mark) {
   if (list.length === 0) return null;
   return h("div", { class: "doubts" }, list.map((sentence) => h("p", { class: "doubt" }, h("b", {}, "In doubt. "), marked(sentence, mark))));
 }
@@ -89,7 +90,7 @@ function cautions({ cautions: list }, mark) {
 const capital = (text) => text.charAt(0).toUpperCase() + text.slice(1);
 
 /** @param {Shown} shown @param {Mark} mark */
-function facts({ facts: list }, mark) {
+export function facts({ facts: list }, mark) {
   if (list.length === 0) return null;
   const rows = list.map((fact) => {
     const figure = marked(fact.figure, mark);
@@ -137,7 +138,7 @@ export function percent(share) {
 }
 
 /** @param {Table} table @param {Mark} mark */
-function tableView(table, mark) {
+export function tableView(table, mark) {
   const tsv = [table.columns, ...table.rows].map((row) => row.map((cell) => marked(cell, mark)).join("\t")).join("\n");
   return h(
     "section",
@@ -162,7 +163,7 @@ function tableView(table, mark) {
 }
 
 /** @param {Shown} shown @param {Mark} mark */
-function notes({ notes: list }, mark) {
+export function notes({ notes: list }, mark) {
   if (list.length === 0) return null;
   return h("section", { class: "notes" }, h("h3", {}, "Assumed, and by which method"), h("ul", {}, list.map((sentence) => h("li", {}, marked(sentence, mark)))));
 }
@@ -171,6 +172,7 @@ function notes({ notes: list }, mark) {
 export function answerText(shown, mark) {
   const lines = [
     `${shown.headline.figure} ${shown.headline.sentence}`,
+    ...(shown.headline.uncertainty ? [shown.headline.uncertainty] : []),
     ...shown.facts.map(({ name, figure }) => `${name}: ${figure}`),
     ...shown.budgets.flatMap((budget) => [
       `${budget.title}: ${budget.total}`,

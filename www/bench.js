@@ -8,6 +8,8 @@
  * @typedef {{ name: string, kind: Kind, when: [string, string][], groups: string[] }} Control
  */
 
+import { DOUBTS, typedDoubts } from "./doubts/text.js";
+
 /** Decides between a PIN and an avalanche detector; the bench itself says it by `avalanche` being there. */
 export const DETECTOR_TYPE = "detector-type";
 
@@ -52,6 +54,8 @@ export function typed(controls, texts) {
     else if (kind === "table") placeTable(bench, name, texts);
     else place(bench, name, text);
   }
+  const doubts = typedDoubts(texts);
+  if (doubts) bench.uncertainty = doubts;
   if (bench.detector && texts[DETECTOR_TYPE] !== "avalanche") bench.detector.avalanche = null;
   return bench;
 }
@@ -93,7 +97,7 @@ export function valueAt(bench, pointer) {
  *
  * @param {Control[]} controls
  * @param {Bench} bench
- * @param {{ number(pointer: string, value: number): string, table(pointer: string): string }} write a table by the pointer of what it stands for
+ * @param {{ number(pointer: string, value: number): string, table(pointer: string): string, doubts(): object | null }} write a table by the pointer of what it stands for
  * @param {Texts} otherwise for choices that the bench leaves open
  * @returns {Texts}
  */
@@ -109,5 +113,7 @@ export function textsOf(controls, bench, write, otherwise) {
     else if (Array.isArray(value)) texts[name] = value.map((one) => write.number(name, one)).join("; ");
     else texts[name] = String(value);
   }
+  const doubts = write.doubts();
+  if (doubts) texts[DOUBTS] = JSON.stringify(doubts);
   return texts;
 }

@@ -10,10 +10,15 @@ const glue = () => /** @type {any} */ (globalThis).wasm_bindgen;
 /** @type {WebAssembly.Module | null} */
 let compiled = null;
 
+/** The compiled core, for a worker; nothing before the start. */
+export const coreModule = () => compiled;
+
+/** The core that the page carries, as it was built. */
+export const coreBytes = () => bytes((document.getElementById("core")?.textContent ?? "").trim());
+
 /** Decodes and starts the core that the page carries. */
 export function start() {
-  const text = document.getElementById("core")?.textContent ?? "";
-  compiled = new WebAssembly.Module(bytes(text.trim()));
+  compiled = new WebAssembly.Module(coreBytes());
   glue().initSync({ module: compiled });
 }
 
@@ -81,7 +86,7 @@ export const core = {
   ask: (question, bench, options) => guarded((door) => door.ask(question, bench, options), { faults: failed() }),
   understand: (typed, mark) => guarded((door) => door.understand(typed, mark), { bench: {}, understood: {}, tables: {}, faults: failed() }),
   follow: (question, typed, mark) =>
-    guarded((door) => door.follow(question, typed, mark), { understood: {}, tables: {}, faults: failed(), blocking: failed(), answer: null }),
+    guarded((door) => door.follow(question, typed, mark), { understood: {}, tables: {}, faults: failed(), blocking: failed(), answer: null, uncertainty: null }),
   read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: failed() }),
   read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: failed() }),
   follow_transfer: (text, typed, choices, mark) =>
@@ -90,5 +95,7 @@ export const core = {
   write_dcc: (bench, administration, mark) => guarded((door) => door.write_dcc(bench, administration, mark), { faults: failed() }),
   read_bench: (text) => guarded((door) => door.read_bench(text), { faults: failed() }),
   write_number: (pointer, value, mark) => guarded((door) => door.write_number(pointer, value, mark), String(value)),
+  write_doubts: (bench, mark) => guarded((door) => door.write_doubts(bench, mark), { faults: failed() }),
+  usual_doubts: () => guarded((door) => door.usual_doubts(), []),
   write_table: (pointer, bench, mark) => guarded((door) => door.write_table(pointer, bench, mark), { faults: failed() }),
 };

@@ -2,20 +2,21 @@
  * What crosses the door, in types. There is no code here: the core computes, the page shows.
  *
  * @typedef {{ pointer: string, code: string, given?: unknown, allowed?: any, sentence: string }} Fault
- * @typedef {{ name: string, asks: string, fields: string[] }} Question
+ * @typedef {{ name: string, asks: string, fields: string[], uncertain: [name: string, says: string][] }} Question
+ * @typedef {{ question: string, name: string, pointer: string, stated: string, amount: string, distribution: string, times: string, note: string }} UsualDoubt
  * @typedef {{ pointer: string, name: string, unit: string, allowed?: unknown, usual: string }} Field
  * @typedef {"auto" | "point" | "comma"} Mark
  *
  * @typedef {{ label: string, unit: string, scale: "linear" | "log", min?: number | null, max?: number | null }} Axis
  * @typedef {{ name: string, x: number[], y: number[] }} Line
  * @typedef {{ name: string, axis?: "x" | "y", at?: number, x?: number, y?: number }} CurveMark
- * @typedef {{ name: string, title: string, x: Axis, y: Axis, lines: Line[], marks: CurveMark[] }} Curve
+ * @typedef {{ name: string, title: string, x: Axis, y: Axis, lines: Line[], marks: CurveMark[], band?: Band }} Curve
  *
  * @typedef {{ name: string, figure: string, note?: string, copy?: string }} Fact
  * @typedef {{ title: string, total: string, rows: { cause: string, figure: string, share: number }[] }} Budget
  * @typedef {{ title: string, columns: string[], rows: string[][] }} Table
  * @typedef {{
- *   headline: { figure: string, sentence: string }, facts: Fact[], budgets: Budget[], tables: Table[],
+ *   headline: { figure: string, sentence: string, uncertainty: string }, facts: Fact[], budgets: Budget[], tables: Table[],
  *   cautions: { about: string, sentence: string }[], doubts: string[], notes: string[]
  * }} Shown
  * @typedef {{ shown: Shown, curves: Curve[] } & Record<string, unknown>} Answer
@@ -29,7 +30,12 @@
  * @typedef {{ form?: string, coverage_factor?: number | null, points: Record<string, number | null>[], reading: Reading }} ReadTable
  * @typedef {{ bench: Bench, understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[] }} Understood
  *
- * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], blocking: Fault[], answer: Answer | null }} Followed
+ * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], blocking: Fault[], answer: Answer | null, uncertainty: object | null }} Followed
+ *
+ * @typedef {{ low: number, high: number, breaks: number[] }} Band
+ * @typedef {Reading & { times: string, stated_setting_nm: number | null, status: { word: string, rows: number, good: boolean }[] }} LogReading
+ * @typedef {{ reading: LogReading, counts: Record<string, number>, curves: Curve[], shown: Shown } & Record<string, unknown>} Log
+ * @typedef {{ value?: Log, faults?: Fault[], reading?: LogReading | null }} LogOutcome what the worker makes of a log
  *
  * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], transfer: Transfer | null }} FollowedTransfer
  * @typedef {{
@@ -58,6 +64,8 @@
  *   write_dcc(bench: Bench, administration: unknown, mark?: Mark): { value?: string, faults?: Fault[] },
  *   read_bench(text: string): { value?: Bench, faults?: Fault[] },
  *   write_number(pointer: string, value: number, mark: Mark): string,
+ *   write_doubts(bench: Bench, mark: Mark): { value?: object | null, faults?: Fault[] },
+ *   usual_doubts(): UsualDoubt[],
  *   write_table(pointer: string, bench: Bench, mark: Mark): { value?: string, faults?: Fault[] },
  * }} Door
  */

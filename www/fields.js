@@ -64,6 +64,8 @@ export function addNotes(fields) {
     const hint = h("span", { class: "hint", id: `${input.id}-hint` }, field ? hintOf(field) : "");
     const understood = h("span", { class: "understood", id: `${input.id}-understood` });
     const fault = h("p", { class: "fault", id: `${input.id}-fault`, hidden: true });
+    // For the pointer; by keyboard a doubt is added in the list of doubts.
+    if (field) input.before(h("button", { type: "button", class: "in-doubt", tabindex: -1, "data-doubt": input.name, "aria-label": `How well is this known: ${field.name}`, title: "How well is this known?" }, "±"));
     box.append(h("p", { class: "note" }, hint, understood), fault);
     input.setAttribute("aria-describedby", `${hint.id} ${understood.id}`);
   }
@@ -107,6 +109,15 @@ export function showUse(pointers) {
 function used(name, pointers) {
   const pointer = name === DETECTOR_TYPE ? "/detector/avalanche" : name;
   return pointers.some((field) => under(pointer, field));
+}
+
+/** Marks the numbers that are in doubt. @param {(pointer: string) => string} shortly how much, empty for none */
+export function showDoubtful(shortly) {
+  for (const button of /** @type {NodeListOf<HTMLElement>} */ (form().querySelectorAll("[data-doubt]"))) {
+    const amount = shortly(button.dataset.doubt ?? "");
+    button.classList.toggle("set", amount !== "");
+    button.title = amount ? `In doubt by ${amount}` : "How well is this known?";
+  }
 }
 
 /** @param {string} pointer */

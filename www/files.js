@@ -2,9 +2,9 @@
 
 import { h, inputById } from "./dom.js";
 
-/** @param {string} name @param {string} type @param {string} text */
-export function save(name, type, text) {
-  const url = URL.createObjectURL(new Blob([text], { type }));
+/** @param {string} name @param {string} type @param {string | Blob} content */
+export function save(name, type, content) {
+  const url = URL.createObjectURL(new Blob([content], { type }));
   const link = h("a", { href: url, download: name });
   document.body.append(link);
   link.click();
@@ -30,28 +30,32 @@ export async function textOf(file) {
  *
  * @param {HTMLElement} button
  * @param {string} inputId
- * @param {(text: string, name: string) => void} use
+ * @param {(file: File) => void} use
  */
-export function opens(button, inputId, use) {
+export function opensFile(button, inputId, use) {
   const input = inputById(inputId);
   button.addEventListener("click", () => input.click());
-  input.addEventListener("change", async () => {
+  input.addEventListener("change", () => {
     const [file] = input.files ?? [];
     if (!file) return;
-    const text = await textOf(file);
     // The same file, chosen again, is a change again.
     input.value = "";
-    use(text, file.name);
+    use(file);
   });
+}
+
+/** The same for a file's text. @param {HTMLElement} button @param {string} inputId @param {(text: string, name: string) => void} use */
+export function opens(button, inputId, use) {
+  opensFile(button, inputId, async (file) => use(await textOf(file), file.name));
 }
 
 /**
  * A place onto which a file may be dropped.
  *
  * @param {HTMLElement} place
- * @param {(text: string, name: string) => void} use
+ * @param {(file: File) => void} use
  */
-export function takesDrops(place, use) {
+export function takesDroppedFile(place, use) {
   const carriesFile = (/** @type {DragEvent} */ event) => event.dataTransfer?.types.includes("Files") ?? false;
   place.addEventListener("dragover", (event) => {
     if (!carriesFile(event)) return;
@@ -60,14 +64,19 @@ export function takesDrops(place, use) {
     place.classList.add("dropping");
   });
   place.addEventListener("dragleave", () => place.classList.remove("dropping"));
-  place.addEventListener("drop", async (event) => {
+  place.addEventListener("drop", (event) => {
     place.classList.remove("dropping");
     const [file] = event.dataTransfer?.files ?? [];
     if (!file) return;
     event.preventDefault();
     event.stopPropagation();
-    use(await textOf(file), file.name);
+    use(file);
   });
+}
+
+/** The same for a file's text. @param {HTMLElement} place @param {(text: string, name: string) => void} use */
+export function takesDrops(place, use) {
+  takesDroppedFile(place, async (file) => use(await textOf(file), file.name));
 }
 
 /** A file name out of a title. @param {string} title */

@@ -1,15 +1,18 @@
 /** From what was typed to what is shown: the state of the page, and everything that follows from it. */
 
 import { answerView } from "./answer.js";
-import { choicesOf, ofAreas, textsOf, typed } from "./bench.js";
+import { choicesOf, ofAreas, takesPart, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { addNotes, controls, fill, firstChoices, form, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
+import { DOUBTS, doubtsOf, shortly } from "./doubts/text.js";
+import { showDoubts, showOffers } from "./doubts/view.js";
+import { addNotes, controls, fill, firstChoices, form, labelOf, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
 import { forgetting, showTables } from "./tables.js";
+import { checkedAnswer, showTrials } from "./doubts/trials.js";
 
 /**
  * @typedef {import("./bench.js").Texts} Texts
@@ -27,7 +30,9 @@ onTrap((message, fresh) => {
 start();
 export const [questions, version] = [core.questions(), core.version()];
 const all = controls();
-addNotes(core.fields());
+const fields = core.fields();
+addNotes(fields);
+const usual = core.usual_doubts();
 
 /** @type {{ texts: Texts, history: import("./history.js").History, question: string, mark: Mark, demo: boolean }} */
 export const state = { texts: {}, history: emptyHistory(), question: questions[0]?.name ?? "", mark: "auto", demo: true, ...soundState(load("state", {})) };
@@ -64,6 +69,14 @@ export function sayFileFaults(sentences) {
   update();
 }
 
+/** What else follows. @type {(() => void)[]} */
+const followers = [];
+
+/** @param {() => void} follower called after each update */
+export function afterUpdate(follower) {
+  followers.push(follower);
+}
+
 /** Everything on the page follows from the texts. */
 export function update() {
   const { texts, mark } = state;
@@ -78,23 +91,43 @@ export function update() {
   showUnderstood(texts, understood);
   showTables(form(), texts, tables, changeChoices);
   showUse(job ? [] : question.fields);
-  showSummary(showFaults(faults, all, texts));
-  const { answer, waits } = job?.follow() ?? { answer: "answer" in rest ? rest.answer : null, waits: waitsOf("blocking" in rest ? rest.blocking : []) };
+  const ofDoubts = faults.filter(({ pointer }) => under(pointer, DOUBTS));
+  showSummary(showFaults(faults.filter((fault) => !ofDoubts.includes(fault)), all, texts));
+  showDoubts({ texts, question, numbers: numbersOf(question), usual, faults: ofDoubts, understood, change });
+  showOffers();
+  showDoubtful((pointer) => shortly(doubtsOf(texts), pointer));
   const name = job ? state.question : question.name;
+  const { answer, waits } = job?.follow() ?? asked("blocking" in rest ? rest : { answer: null, blocking: [] }, name);
   if (answer) {
     good.set(name, answer);
     byId("banner").hidden = true;
   }
+  if ("uncertainty" in rest) showTrials(name, texts, !!rest.uncertainty);
   showAnswer(name, waits);
   showTools();
+  for (const part of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-question]"))) part.hidden = part.dataset.question !== name;
+  for (const follow of followers) follow();
   save("state", state);
+}
+
+/** A question's answer, checked by trials where that was done, and what it waits for. @param {{ answer: Answer | null, blocking: Fault[] }} followed @param {string} name */
+const asked = ({ answer, blocking }, name) => ({ answer: answer && (checkedAnswer(name, state.texts) ?? answer), waits: waitsOf(blocking) });
+
+/** The numbers of a question that stand on the bench now. @param {import("./door.js").Question} question */
+function numbersOf(question) {
+  const known = new Set(fields.map(({ pointer }) => pointer));
+  const here = all.filter((control) => known.has(control.name) && takesPart(control, state.texts) && question.fields.some((field) => under(control.name, field)));
+  return here.map(({ name }) => ({ pointer: name, label: labelOf(name) }));
 }
 
 /** @param {string} name @param {Wait[]} waits */
 function showAnswer(name, waits) {
   const found = good.get(name);
   const answer = byId("answer");
-  answer.replaceChildren(...(found ? answerView(found, state.mark) : []));
+  const [head, ...rest] = found ? answerView(found, state.mark) : [];
+  byId("answer-head").replaceChildren(...(head ? [head] : []));
+  byId("answer-rest").replaceChildren(...rest);
+  byId("doubts").hidden = !found || jobs.has(name);
   const stale = waits.length > 0;
   answer.classList.toggle("stale", stale);
   const line = byId("state-line");
@@ -179,6 +212,7 @@ export function put(bench, name) {
   const write = {
     number: (/** @type {string} */ pointer, /** @type {number} */ value) => core.write_number(pointer, value, state.mark),
     table: (/** @type {string} */ pointer) => core.write_table(pointer, bench, state.mark).value ?? "",
+    doubts: () => core.write_doubts(bench, state.mark).value ?? null,
   };
   change({ ...besideBench(), ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
 }
@@ -189,8 +223,8 @@ export function putCertificate(certificate, name) {
   const points = core.write_table(at, { meter: { certificate } }, state.mark).value ?? "";
   const k = certificate.coverage_factor;
   const factor = k ? core.write_number(`${at}/coverage_factor`, k, state.mark) : "";
-  // The form stands in the table's header; a correlation was said of the points of the other certificate.
-  const texts = { [`${at}/points`]: points, [`${at}/coverage_factor`]: factor, [`${at}/form`]: "", [`${at}/point_correlation`]: "" };
+  // The form stands in the table's header; correlation and scale were said of the other certificate.
+  const texts = { [`${at}/points`]: points, [`${at}/coverage_factor`]: factor, [`${at}/form`]: "", [`${at}/point_correlation`]: "", [`${at}/scale`]: "" };
   change({ ...forgetting(state.texts, `${at}/points`), ...texts }, null, name);
 }
 

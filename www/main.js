@@ -5,13 +5,17 @@ import { say } from "./copy.js";
 import { core } from "./core.js";
 import { isXml, openDcc, prepareDcc, saveDcc } from "./dcc.js";
 import { byId, h, inputById, setText } from "./dom.js";
+import { doubtsOf, withDoubts } from "./doubts/text.js";
+import { addDoubt } from "./doubts/view.js";
 import { firstChoices, form, inputOf, labelOf } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
 import { besideBench, change, jobs, put, putCertificate, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { startLog } from "./log/panel.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
+import { cancel, run } from "./doubts/trials.js";
 import { prepareTransfer } from "./transfer.js";
 
 /** @typedef {import("./door.js").Mark} Mark */
@@ -88,6 +92,28 @@ byId("bench").addEventListener("focusin", (event) => {
   const { id } = /** @type {HTMLElement} */ (event.target);
   setText(byId("hint"), document.getElementById(`${id}-hint`)?.textContent ?? "");
 });
+
+byId("question").addEventListener("focusout", () => (state.history = closed(state.history)));
+form().addEventListener("click", (event) => {
+  const { doubt } = /** @type {HTMLElement} */ (event.target).dataset;
+  if (doubt) addDoubt(doubt);
+});
+byId("doubts-add").addEventListener("change", (event) => {
+  const select = /** @type {HTMLSelectElement} */ (event.target);
+  const what = select.value;
+  select.value = "";
+  if (what) addDoubt(what);
+});
+for (const key of /** @type {const} */ (["trials", "seed", "adaptive"])) {
+  const input = inputById(`trials-${key}`);
+  input.addEventListener("input", () => {
+    const doubts = doubtsOf(state.texts);
+    const to = key === "adaptive" ? input.checked : input.value;
+    change(withDoubts(state.texts, { ...doubts, monte_carlo: { ...doubts.monte_carlo, [key]: to } }), key === "adaptive" ? null : `/uncertainty#${key}`, "Trials");
+  });
+}
+byId("trials-run").addEventListener("click", () => run(state.question, state.texts, () => understoodBench().bench, update));
+byId("trials-cancel").addEventListener("click", () => cancel(update));
 
 for (const button of /** @type {NodeListOf<HTMLElement>} */ (form().querySelectorAll("[data-open-table]"))) {
   const id = button.dataset.openTable ?? "";
@@ -174,6 +200,7 @@ addEventListener("beforeprint", () => {
 });
 prepareDcc();
 prepareTransfer();
+startLog();
 Object.assign(window, { leastlight: core });
 toHash();
 if (Object.keys(state.texts).length === 0) {

@@ -37,6 +37,18 @@ const COLUMNS = {
 /** Units that their own sign does not explain. @type {Record<string, string>} */
 const EXPLAINED = { 1: "1, linear", dB: "dB, relative" };
 
+/** The same for the columns of a log. @type {typeof ROLES} */
+const LOG_ROLES = {
+  time: { says: "time", units: ["s", "ms", "min", "h"] },
+  date: { says: "day", units: [] },
+  power: { says: "reading", units: ["dBm", "W", "mW", "µW", "nW", "pW"] },
+  power_unit: { says: "unit of the reading", units: [] },
+  wavelength: { says: "wavelength setting", units: ["nm", "µm"] },
+  range: { says: "range", units: [] },
+  status: { says: "status", units: [] },
+  ignored: { says: "nothing that is read", units: [] },
+};
+
 /** Rows named one by one; of more, only how many. */
 const MOST_ROWS = 12;
 
@@ -84,7 +96,7 @@ function unfold(box, filled) {
 }
 
 /** Draws anew and leaves the focus where it was. @param {HTMLElement} place @param {HTMLElement[]} content */
-function redraw(place, content) {
+export function redraw(place, content) {
   const focused = /** @type {HTMLElement | null} */ (document.activeElement);
   const key = focused && place.contains(focused) ? focused.dataset.choice : undefined;
   place.replaceChildren(...content);
@@ -101,36 +113,47 @@ function redraw(place, content) {
  */
 function view(reading, choices, current, kind, change) {
   const set = (/** @type {Record<string, unknown>} */ more) => change({ ...choices, ...more });
-  const header = reading.header_line ? `header in line ${reading.header_line}` : "no header";
-  const skipped = Number(reading.skipped_lines);
-  const counts = [current && reading.rows_read > 0 ? `${reading.rows_read} rows` : "not read now", header, skipped > 0 && `${skipped} lines before the table skipped`];
   return [
-    h("p", { class: "read-line" }, h("b", {}, "Read as: "), counts.filter(Boolean).join(", ")),
-    h(
-      "div",
-      { class: "read-choices" },
-      select("delimiter", "Cells parted by", DELIMITERS, reading.delimiter, (delimiter) => set({ delimiter })),
-      select("decimal_mark", "Decimal mark", MARKS, reading.decimal_mark, (decimal_mark) => set({ decimal_mark })),
-    ),
-    columns(reading, choices, kind, set),
+    countsLine(reading, current && reading.rows_read > 0 ? `${reading.rows_read} rows` : "not read now"),
+    h("div", { class: "read-choices" }, cutChoices(reading, set)),
+    columnsView(reading, choices, kind, set),
     ...sentences(reading),
     ...(choices ? [h("button", { type: "button", class: "quiet", "data-choice": "forget", click: () => change(null) }, "Recognise it anew")] : []),
   ];
 }
 
+/** @param {Reading} reading @param {string} rows how many were read */
+export function countsLine(reading, rows) {
+  const header = reading.header_line ? `header in line ${reading.header_line}` : "no header";
+  const skipped = Number(reading.skipped_lines);
+  const counts = [rows, header, skipped > 0 && `${skipped} lines before the table skipped`];
+  return h("p", { class: "read-line" }, h("b", {}, "Read as: "), counts.filter(Boolean).join(", "));
+}
+
+/** @param {Reading} reading @param {(more: Record<string, unknown>) => void} set */
+export const cutChoices = (reading, set) => [
+  select("delimiter", "Cells parted by", DELIMITERS, reading.delimiter, (delimiter) => set({ delimiter })),
+  select("decimal_mark", "Decimal mark", MARKS, reading.decimal_mark, (decimal_mark) => set({ decimal_mark })),
+];
+
 /** @param {Reading} reading @param {Record<string, any> | null} choices @param {string} kind @param {(more: Record<string, unknown>) => void} set */
-function columns(reading, choices, kind, set) {
-  const roles = COLUMNS[kind] ?? [];
-  const names = Object.fromEntries(roles.map((role) => [role, ROLES[role]?.says ?? role]));
+export function columnsView(reading, choices, kind, set) {
+  const known = kind === "log" ? LOG_ROLES : ROLES;
+  const roles = kind === "log" ? Object.keys(known) : (COLUMNS[kind] ?? []);
+  const names = Object.fromEntries(roles.map((role) => [role, known[role]?.says ?? role]));
   const choose = (/** @type {Column} */ column, /** @type {Partial<Column>} */ to) => {
-    const others = /** @type {Column[]} */ (choices?.columns ?? []).filter(({ index }) => index !== column.index);
     const { index, role, unit } = { ...column, ...to };
-    const fits = ROLES[role]?.units.includes(unit ?? "");
+    // What another column was chosen for, and this one is now, the other one is no more.
+    const stays = (/** @type {Column} */ other) => other.index !== index && (other.role !== role || role === "ignored");
+    const others = /** @type {Column[]} */ (choices?.columns ?? []).filter(stays);
+    const fits = known[role]?.units.includes(unit ?? "");
     set({ columns: [...others, { index, role, ...(fits ? { unit } : {}) }] });
   };
   const rows = reading.columns.map((column) => {
     const name = `Column ${column.index + 1}`;
-    const units = ROLES[column.role]?.units ?? [];
+    // A time as ISO 8601 writes it has its units in itself.
+    const hasUnit = column.role !== "time" || /** @type {any} */ (reading).times === "elapsed";
+    const units = hasUnit ? (known[column.role]?.units ?? []) : [];
     return h(
       "tr",
       {},
@@ -163,14 +186,15 @@ function sentences({ cleaned, bad_rows: bad }) {
 }
 
 /** @param {string} key @param {string} label @param {Record<string, string>} options @param {string} value @param {(value: string) => void} change */
-function select(key, label, options, value, change) {
+export function select(key, label, options, value, change) {
   return h("label", {}, h("span", {}, label), bare(key, null, options, value, change));
 }
 
 /** @param {string} key @param {string | null} label @param {Record<string, string>} options @param {string} value @param {(value: string) => void} change */
 function bare(key, label, options, value, change) {
   const choose = (/** @type {Event} */ event) => change(/** @type {HTMLSelectElement} */ (event.target).value);
-  const items = Object.entries(options).map(([name, says]) => h("option", { value: name, selected: name === value }, says));
+  const open = value in options ? [] : [["", "choose…"]];
+  const items = [...open, ...Object.entries(options)].map(([name, says]) => h("option", { value: name, selected: name === value }, says));
   return h("select", { "data-choice": key, "aria-label": label, change: choose, autocomplete: "off" }, items);
 }
 

@@ -185,3 +185,21 @@ pub const TEMPERATURE_C: Kind = Kind {
     style: Style::Plain,
     units: &[plain("°C"), plain("C"), by("K", false, |kelvin| Ok(kelvin - ZERO_CELSIUS_K))],
 };
+
+/// A difference of temperatures, kept in K.
+pub const TEMPERATURE_DIFFERENCE: Kind =
+    Kind { unit: "K", style: Style::Plain, units: &[plain("K"), plain("°C"), plain("C")] };
+
+/// A difference of optical powers, kept in W.
+pub const POWER_DIFFERENCE: Kind = Kind { unit: "W", style: Style::Prefixed, units: &[si("W")] };
+
+/// The kind of a difference of two values of a kind: two levels differ by decibels, two wavelengths by no frequency.
+pub fn difference(kind: &'static Kind) -> &'static Kind {
+    match kind.unit {
+        "dBm" | "dB/Hz" => &DECIBEL,
+        "nm" => &LINE_WIDTH,
+        "W" => &POWER_DIFFERENCE,
+        "°C" | "K" => &TEMPERATURE_DIFFERENCE,
+        _ => kind,
+    }
+}

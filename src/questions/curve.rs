@@ -19,6 +19,27 @@ pub struct Curve {
     pub marks: Vec<Mark>,
 }
 
+/// A drawing in which two lines are the ends of what was seen, with all that lies between.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Banded {
+    /// The drawing.
+    #[serde(flatten)]
+    pub curve: Curve,
+    /// Which lines those are.
+    pub band: Band,
+}
+
+/// Two lines over the same places that bound a filled area.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Band {
+    /// The index of the lower line.
+    pub low: usize,
+    /// The index of the upper line.
+    pub high: usize,
+    /// The indices of places before which both lines are broken: nothing is known in between.
+    pub breaks: Vec<usize>,
+}
+
 /// An axis.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Axis {

@@ -1,7 +1,9 @@
 //! What someone came to find out: one question a file, each a pure function of the bench.
 
 pub mod curve;
+pub mod log;
 pub mod needs;
+pub mod prepared;
 pub mod reading;
 pub mod sensitivity;
 pub mod shown;
@@ -10,6 +12,7 @@ pub mod transfer;
 
 use crate::bench::Bench;
 use crate::fault::Faults;
+use prepared::Prepared;
 use serde::Serialize;
 
 /// Named numbers of an answer; a number that does not exist for this bench is absent.
@@ -28,6 +31,10 @@ pub struct Question {
     pub ask: fn(&Bench) -> Result<Answer, Faults>,
     /// Only its numbers, for sweeps and searches.
     pub numbers: fn(&Bench) -> Result<Numbers, Faults>,
+    /// The numbers whose uncertainty is offered, with what each is called; the headline's own comes first.
+    pub uncertain: &'static [(&'static str, &'static str)],
+    /// One of its numbers made ready to be asked for many times.
+    pub prepare: fn(&Bench, &'static str) -> Result<Prepared, Faults>,
 }
 
 /// All questions.
@@ -38,6 +45,11 @@ pub const QUESTIONS: &[Question] = &[
         fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
         ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
         numbers: sensitivity::numbers,
+        uncertain: &[
+            ("average_power_w", "the sensitivity"),
+            ("average_power_dbm", "the sensitivity, as a level"),
+        ],
+        prepare: sensitivity::prepare,
     },
     Question {
         name: "reading",
@@ -51,6 +63,12 @@ pub const QUESTIONS: &[Question] = &[
         ],
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
+        uncertain: &[
+            ("power_w", "the absolute power"),
+            ("ratio", "the ratio to the other reading"),
+            ("correction_factor", "the correction alone"),
+        ],
+        prepare: reading::prepare,
     },
 ];
 
@@ -62,4 +80,14 @@ pub enum Answer {
     Sensitivity(Box<sensitivity::Answer>),
     /// What a reading is worth.
     Reading(Box<reading::Answer>),
+}
+
+impl Answer {
+    /// The answer as it is shown, and what is drawn.
+    pub fn shown_mut(&mut self) -> (&mut shown::Shown, &mut Vec<curve::Curve>) {
+        match self {
+            Answer::Sensitivity(answer) => (&mut answer.shown, &mut answer.curves),
+            Answer::Reading(answer) => (&mut answer.shown, &mut answer.curves),
+        }
+    }
 }

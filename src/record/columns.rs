@@ -292,6 +292,6 @@ fn words(role: Role) -> &'static str {
         Role::SpectralPower => "power per nm",
         Role::Power => "power",
         Role::Time => "time",
-        Role::Detector | Role::Ignored => "column",
+        _ => "column",
     }
 }

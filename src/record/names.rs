@@ -72,6 +72,14 @@ named! {
         Power = "power",
         /// When.
         Time = "time",
+        /// The day, where the time of the day has a column of its own.
+        Date = "date",
+        /// The unit of the row's power.
+        PowerUnit = "power_unit",
+        /// The measuring range of the meter.
+        Range = "range",
+        /// Whether the meter trusts its own reading.
+        Status = "status",
         /// Nothing that is read.
         Ignored = "ignored",
     }
@@ -118,6 +126,12 @@ named! {
         DbmPerNm = "dBm/nm",
         /// Seconds.
         Second = "s",
+        /// Milliseconds.
+        Millisecond = "ms",
+        /// Minutes.
+        Minute = "min",
+        /// Hours.
+        Hour = "h",
     }
 }
 
@@ -178,8 +192,8 @@ impl Role {
             Role::Power => {
                 &[Unit::Watt, Unit::Milliwatt, Unit::Microwatt, Unit::Nanowatt, Unit::Picowatt, Unit::Dbm]
             }
-            Role::Time => &[Unit::Second],
-            Role::Detector | Role::Ignored => &[],
+            Role::Time => &[Unit::Second, Unit::Millisecond, Unit::Minute, Unit::Hour],
+            Role::Detector | Role::Date | Role::PowerUnit | Role::Range | Role::Status | Role::Ignored => &[],
         }
     }
 }
@@ -200,20 +214,33 @@ impl Unit {
             "nW/nm" | "nW.nm-1" => Unit::NanowattPerNm,
             "dBm/nm" | "dbm/nm" => Unit::DbmPerNm,
             "s" | "sec" => Unit::Second,
+            "ms" => Unit::Millisecond,
+            "min" => Unit::Minute,
+            "h" | "hours" => Unit::Hour,
             _ => return None,
         })
     }
 
-    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s; 0 for levels.
+    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s; 0 for levels and for what is
+    /// no power of ten apart.
     pub(super) fn power_of_ten(self) -> i32 {
         match self {
             Unit::Micrometre => 3,
-            Unit::MilliamperePerWatt | Unit::Milliwatt | Unit::MilliwattPerNm => -3,
+            Unit::MilliamperePerWatt | Unit::Milliwatt | Unit::MilliwattPerNm | Unit::Millisecond => -3,
             Unit::Microwatt | Unit::MicrowattPerNm => -6,
             Unit::Nanowatt | Unit::NanowattPerNm => -9,
             Unit::Picowatt => -12,
             Unit::Percent => -2,
             _ => 0,
+        }
+    }
+
+    /// What is left to multiply by after the power of ten.
+    pub(super) fn factor(self) -> f64 {
+        match self {
+            Unit::Minute => 60.0,
+            Unit::Hour => 3600.0,
+            _ => 1.0,
         }
     }
 

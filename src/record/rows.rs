@@ -150,7 +150,7 @@ fn spaced(text: &str) -> Vec<Row<'_>> {
 
 /// Cuts a line at runs of spaces. A unit stays with what it belongs to, and words parted by one space stay
 /// together where other cells are parted by more.
-fn words(line: &str) -> Vec<String> {
+pub(super) fn words(line: &str) -> Vec<String> {
     let wide: Vec<&str> = line
         .split("  ")
         .flat_map(|part| part.split('\t'))
@@ -176,7 +176,8 @@ fn words(line: &str) -> Vec<String> {
 }
 
 fn belongs_to_the_last(word: &str, last: &str) -> bool {
-    let is_unit = Unit::written(word).is_some() && !is_number(word) && !last.contains(['%', '(', '[', '/']);
+    let known = Unit::written(word).or_else(|| Unit::written_of_power(word));
+    let is_unit = known.is_some() && !is_number(word) && !last.contains(['%', '(', '[', '/']);
     let open = last.matches(['(', '[']).count() > last.matches([')', ']']).count();
     open || is_unit || word.starts_with(['(', '[', '/'])
 }

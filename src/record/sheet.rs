@@ -46,7 +46,7 @@ pub(super) struct Sheet<'t> {
 }
 
 /// A cell cut into its number and the unit behind it; nothing where it is no number.
-fn amount(text: &str) -> Option<(Cell<'_>, Option<Unit>)> {
+pub(super) fn amount(text: &str) -> Option<(Cell<'_>, Option<Unit>)> {
     let text = text.trim();
     let (last, character) =
         text.char_indices().rev().find(|(_, c)| c.is_ascii_digit() || matches!(c, '.' | ','))?;
@@ -169,7 +169,7 @@ impl<'t> Sheet<'t> {
                 self.mark.name()
             ),
         })?;
-        Ok((value, unit))
+        Ok((value * unit.factor(), unit))
     }
 
     /// How the table was understood.
@@ -349,7 +349,7 @@ fn header(rows: &[Row], start: usize) -> Option<usize> {
 }
 
 /// Whether a row holds nothing but units.
-fn is_units(row: &Row) -> bool {
+pub(super) fn is_units(row: &Row) -> bool {
     let bare = |cell: &str| cell.trim_matches(['(', ')', '[', ']']).to_owned();
     row.cells()
         .filter(|cell| !cell.is_empty())
@@ -358,7 +358,7 @@ fn is_units(row: &Row) -> bool {
 }
 
 /// The words above a column; a row of units below the names goes with them.
-fn heading(rows: &[Row], start: usize, header: Option<usize>, index: usize) -> String {
+pub(super) fn heading(rows: &[Row], start: usize, header: Option<usize>, index: usize) -> String {
     let Some(header) = header else { return String::new() };
     let cell = |at: usize| rows.get(at).map_or("", |row| row.cell(index));
     let between = (header + 1..start).map(cell).find(|text| !text.is_empty());
@@ -370,7 +370,7 @@ fn heading(rows: &[Row], start: usize, header: Option<usize>, index: usize) -> S
 }
 
 /// The unit that a header names: in brackets, alone, or behind a slash, a comma, an underscore or a space.
-fn unit_in(text: &str) -> Option<Unit> {
+pub(super) fn unit_in(text: &str) -> Option<Unit> {
     let written = |part: &str| {
         let part = part.trim_matches([' ', '(', ')', '[', ']', '{', '}']);
         let own = match part {

@@ -1,4 +1,6 @@
 //! Statements about chance.
 
 pub mod normal;
+pub mod running;
+pub mod shape;
 pub mod transfer;

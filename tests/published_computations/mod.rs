@@ -2,6 +2,7 @@
 
 mod door;
 mod light;
+mod log;
 mod mathematics;
 mod receiver;
 mod transfer;
@@ -10,5 +11,5 @@ use crate::support::cases::Computation;
 
 /// Everything that a case may ask for.
 pub fn all() -> Vec<(&'static str, Computation)> {
-    [door::ALL, light::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
+    [door::ALL, light::ALL, log::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
 }

@@ -35,7 +35,7 @@ export function draw(curve, width, mark) {
     s("defs", {}, s("clipPath", { id: clip }, s("rect", { ...frame }))),
     key.group,
     grid(x, y, frame),
-    s("g", { "clip-path": `url(#${clip})` }, ...lines.map(({ points }, i) => s("path", { class: `line line-${i % 4}`, d: pathOf(points) }))),
+    s("g", { "clip-path": `url(#${clip})` }, ...(curve.band ? bandPaths(curve.band, lines) : lines.map(({ points }, i) => s("path", { class: `line line-${i % 4}`, d: pathOf(points) })))),
     axisTexts(curve, x, y, frame),
     ...marks(curve, x, y, frame, lines),
     overlay,
@@ -62,10 +62,22 @@ const within = ({ px, py }, frame) => px >= frame.x - 0.5 && px <= frame.x + fra
 /** @param {Seen[]} points */
 const pathOf = (points) => lineShape(/** @type {(point: Seen) => number} */ (({ px }) => px), ({ py }) => py)(points) ?? "";
 
+/** The area between two lines and its edges, in pieces where nothing is known in between. @param {import("../door.js").Band} band @param {{ points: Seen[] }[]} lines */
+function bandPaths({ low, high, breaks }, lines) {
+  const pieces = (/** @type {number} */ line) => {
+    const points = lines[line]?.points ?? [];
+    return [0, ...breaks].map((from, i) => points.slice(from, breaks[i] ?? points.length));
+  };
+  const lower = pieces(low);
+  const area = pieces(high).map((piece, i) => pathOf([...piece, ...(lower[i] ?? []).toReversed()]));
+  const edges = [low, high].map((line) => s("path", { class: "edge", d: pieces(line).map(pathOf).join("") }));
+  return [s("path", { class: "band", d: area.join("") }), ...edges];
+}
+
 /** Names of the lines with a sample of each, in as many rows as they need. @param {Curve} curve @param {number} width */
 function legend(curve, width) {
   const group = s("g", { class: "key" });
-  if (curve.lines.length < 2) return { group, height: 4 };
+  if (curve.lines.length < 2 || curve.band) return { group, height: 4 };
   let [left, top] = [58, 12];
   curve.lines.forEach(({ name }, i) => {
     const needs = 34 + textWidth(name, SIZE) + 14;

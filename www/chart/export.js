@@ -15,6 +15,7 @@ text { font: 12px system-ui, sans-serif; fill: #26221c; }
 .line { fill: none; stroke-width: 2; }
 .line-0 { stroke: #b06a00; } .line-1 { stroke: #466a80; stroke-dasharray: 7 4; }
 .line-2 { stroke: #26221c; stroke-dasharray: 2 3; } .line-3 { stroke: #7a4b7d; stroke-dasharray: 9 3 2 3; }
+.band { fill: #b06a00; fill-opacity: .35; stroke: #b06a00; } .edge { fill: none; stroke: #b06a00; }
 .mark { stroke: #5f594f; stroke-dasharray: 4 4; fill: none; } .mark-point { fill: #fff; stroke: #26221c; stroke-width: 2; }
 `;
 

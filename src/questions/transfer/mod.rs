@@ -160,6 +160,7 @@ fn result(comparison: Comparison, mut rows: Vec<TransferRow>, choices: &Transfer
         coverage_factor: Some(k),
         // Of how much the reference's common error is in each point the table does not keep track: the cautious choice.
         point_correlation: None,
+        scale: None,
         points: points.collect(),
     };
     let history = export::history(choices, &rows);
