@@ -292,6 +292,39 @@ pub fn transfer_calibration(text: &str, bench: &Tree, choices: &Tree) -> Result<
     transfer::transfer_calibration(text, &Bench::from_tree(bench)?, choices)
 }
 
+/// What a page needs at each keystroke of a calibration by comparison.
+#[derive(Debug, Serialize)]
+pub struct FollowedTransfer {
+    /// How each typed number was read, by pointer.
+    pub understood: BTreeMap<String, String>,
+    /// How the tables were read, by pointer: the reference's certificate, and the readings under `/readings`.
+    pub tables: BTreeMap<String, Reading>,
+    /// Everything that is wrong or missing: with the reference under `/meter`, with the choices under `/choices`, with
+    /// the readings under `/readings`.
+    pub faults: Faults,
+    /// The result.
+    pub transfer: Option<Transfer>,
+}
+
+/// As [`transfer_calibration`], of a bench and choices as they were typed.
+pub fn follow_transfer(text: &str, typed: &Tree, choices: &Tree, decimal_mark: &str) -> FollowedTransfer {
+    let typed::Understanding { bench, understood, mut tables, mut faults } = understand(typed, decimal_mark);
+    let reader = Reader::typed(mark(decimal_mark).unwrap_or_default());
+    let steps = transfer::transfer_steps(text, &bench, choices, reader);
+    tables.extend(steps.reading.map(|reading| ("/readings".to_owned(), reading)));
+    // What cannot be read of the reference is not said once more to be missing.
+    let unread = faults.iter().any(|fault| under(&fault.pointer, "/meter"));
+    let found = steps.faults.into_iter().filter(|fault| !(unread && under(&fault.pointer, "/meter")));
+    let placed = found.map(|fault| match fault.pointer.as_str() {
+        "" => Fault { pointer: "/readings".to_owned(), ..fault },
+        _ => fault,
+    });
+    faults.extend(placed);
+    let transfer = steps.transfer.filter(|_| faults.is_empty());
+    let understood = understood.into_iter().chain(steps.understood).collect();
+    FollowedTransfer { understood, tables, faults, transfer }
+}
+
 /// Reads a log of readings from a file's text, corrects it by the certificate on the bench and sums it up.
 ///
 /// `options` may have `choices` (delimiter, decimal_mark, first_row, columns, good_status, setting: file or bench), the
@@ -308,11 +341,16 @@ pub fn read_dcc(text: &str, choices: &Tree) -> Result<DccReading, Faults> {
     record::read_dcc(text, choices)
 }
 
-/// Writes the certificate of a bench's meter as a digital calibration certificate.
-pub fn write_dcc(bench: &Tree, administration: &Tree) -> Result<String, Faults> {
+/// Writes the certificate of a bench's meter as a digital calibration certificate. With a decimal mark, numbers of the
+/// administration may be texts as a person types them.
+pub fn write_dcc(bench: &Tree, administration: &Tree, decimal_mark: Option<&str>) -> Result<String, Faults> {
     let bench = Bench::from_tree(bench)?;
+    let reader = match decimal_mark {
+        Some(word) => Reader::typed(mark(word)?),
+        None => Reader::strict(),
+    };
     match bench.meter.as_ref().and_then(|meter| meter.certificate.as_ref()) {
-        Some(certificate) => record::write_dcc(certificate, administration),
+        Some(certificate) => record::write_dcc(certificate, administration, reader),
         None => Err(vec![Fault::missing("/meter/certificate", "A certificate is needed to be written.")]),
     }
 }

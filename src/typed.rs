@@ -10,8 +10,8 @@ use crate::quantity::kind;
 use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
 use crate::record::{
-    self, Choices, Reading, read_certificate, read_responsivity, read_spectrum, write_certificate_points,
-    write_responsivity_points, write_spectrum_points,
+    self, Choices, Reading, read_certificate, read_responsivity, read_spectrum, spectrum_layout,
+    write_certificate_points, write_responsivity_points, write_spectrum_points,
 };
 use crate::tree::Tree;
 use serde::Serialize;
@@ -47,6 +47,7 @@ pub fn understand(typed: &Tree, mark: DecimalMark) -> Understanding {
             Err(found) => {
                 *part = Tree::Null;
                 faults.extend(found);
+                tables.extend(layout(&table, place).map(|reading| (place.pointer.to_owned(), reading)));
             }
         }
     }
@@ -67,15 +68,17 @@ struct Pasted {
 struct Place {
     pointer: &'static str,
     read: fn(&str, &Choices) -> Result<Pasted, Faults>,
+    /// How a text is understood that cannot be read, where a choice of columns and units may mend it.
+    layout: fn(&str, &Choices) -> Option<Reading>,
     /// Whether the bench keeps the bare list of points there, with nothing beside it.
     only_points: bool,
 }
 
 const PLACES: &[Place] = &[
-    Place { pointer: "/source/spectrum", read: spectrum, only_points: false },
-    Place { pointer: "/detector/responsivity", read: responsivity, only_points: false },
-    Place { pointer: "/meter/typical_curve", read: responsivity, only_points: true },
-    Place { pointer: "/meter/certificate", read: certificate, only_points: false },
+    Place { pointer: "/source/spectrum", read: spectrum, layout: spectrum_layout, only_points: false },
+    Place { pointer: "/detector/responsivity", read: responsivity, layout: |_, _| None, only_points: false },
+    Place { pointer: "/meter/typical_curve", read: responsivity, layout: |_, _| None, only_points: true },
+    Place { pointer: "/meter/certificate", read: certificate, layout: |_, _| None, only_points: false },
 ];
 
 fn responsivity(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
@@ -122,6 +125,14 @@ fn read_table(table: &Tree, place: &Place) -> Result<Option<Pasted>, Faults> {
     let owned =
         |fault: Fault| Fault { pointer: format!("{}/points{}", place.pointer, fault.pointer), ..fault };
     (place.read)(text, &choices).map(Some).map_err(|faults| faults.into_iter().map(owned).collect())
+}
+
+/// How a table that cannot be read is understood so far.
+fn layout(table: &Tree, place: &Place) -> Option<Reading> {
+    let Some(Tree::Text(text)) = table.get("text") else { return None };
+    // Choices that are none are faults already; the text is shown as it is understood without them.
+    let choices = Choices::from_tree(table.get("choices").unwrap_or(&Tree::Null), "").unwrap_or_default();
+    (place.layout)(text, &choices)
 }
 
 /// Puts what was read in the place of the text. What a person typed beside the text, such as k, goes before what

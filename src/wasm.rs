@@ -113,6 +113,20 @@ pub fn transfer_calibration(text: &str, bench: JsValue, choices: JsValue) -> Res
     outcome("value", calibrated)
 }
 
+/// A calibration by comparison as it was typed, as far as it goes.
+#[wasm_bindgen]
+pub fn follow_transfer(
+    text: &str,
+    typed: JsValue,
+    choices: JsValue,
+    decimal_mark: &str,
+) -> Result<JsValue, JsValue> {
+    match tree(typed, "").and_then(|typed| Ok((typed, tree(choices, "/choices")?))) {
+        Ok((typed, choices)) => out(&door::follow_transfer(text, &typed, &choices, decimal_mark)),
+        Err(faults) => outcome::<()>("value", Err(faults)),
+    }
+}
+
 /// `{ value }` or `{ faults }`.
 #[wasm_bindgen]
 pub fn read_dcc(text: &str, choices: JsValue) -> Result<JsValue, JsValue> {
@@ -182,9 +196,14 @@ fn log_outcome(result: Result<Log, Refused>) -> Result<JsValue, JsValue> {
 
 /// `{ value }`, the text of a file, or `{ faults }`.
 #[wasm_bindgen]
-pub fn write_dcc(bench: JsValue, administration: JsValue) -> Result<JsValue, JsValue> {
-    let written =
-        tree(bench, "").and_then(|bench| door::write_dcc(&bench, &tree(administration, "/administration")?));
+pub fn write_dcc(
+    bench: JsValue,
+    administration: JsValue,
+    decimal_mark: Option<String>,
+) -> Result<JsValue, JsValue> {
+    let written = tree(bench, "").and_then(|bench| {
+        door::write_dcc(&bench, &tree(administration, "/administration")?, decimal_mark.as_deref())
+    });
     outcome("value", written)
 }
 

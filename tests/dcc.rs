@@ -332,6 +332,15 @@ fn what_is_no_certificate_is_refused_with_its_place() {
     assert!(read(&deep).is_err());
 }
 
+#[test]
+fn a_file_that_nests_without_end_does_no_harm() {
+    let levels = 100_000;
+    let deep = format!("{}{}", "<dcc:list>".repeat(levels), "</dcc:list>".repeat(levels));
+    // Refused or read, but neither a crash nor a long wait.
+    let _ = read(&file("3.3.0", &deep));
+    let _ = read(&"<a>".repeat(levels));
+}
+
 fn administration() -> Value {
     json!({
         "unique_identifier": "AR-2026-017", "language": "en",
@@ -355,7 +364,7 @@ fn bench(form: &str) -> Value {
 }
 
 fn write(bench: &Value, administration: &Value) -> Result<String, Vec<Fault>> {
-    door::write_dcc(&tree(bench), &tree(administration))
+    door::write_dcc(&tree(bench), &tree(administration), None)
 }
 
 #[test]
@@ -387,6 +396,30 @@ fn what_is_written_is_read_back() {
     let place = std::path::Path::new(env!("CARGO_TARGET_TMPDIR")).join("dcc.xml");
     std::fs::write(place, write(&bench("responsivity"), &administration()).expect("a file"))
         .expect("a place to write");
+}
+
+#[test]
+fn uncertainties_can_be_left_out_by_choice() {
+    let text = write(&bench("responsivity"), &administration()).expect("a file");
+    let found = chosen(&text, json!({ "expanded": "none" })).expect("a certificate");
+    let certificate = found.certificate.expect("a certificate");
+    assert!(certificate.points.iter().all(|point| point.expanded_percent.is_none()));
+    assert_eq!((certificate.coverage_factor, found.taken.expanded), (None, None));
+}
+
+#[test]
+fn numbers_of_the_administration_may_be_typed() {
+    let mut typed = administration();
+    typed["temperature_c"] = json!("23,1 °C");
+    typed["coverage_probability"] = json!("95,45 %");
+    let write = |given: &Value, mark| door::write_dcc(&tree(&bench("responsivity")), &tree(given), mark);
+    let text = write(&typed, Some("auto")).expect("a file");
+    assert!(text.contains("<si:value>23.1</si:value>"), "{text}");
+    assert!(text.contains("<si:coverageProbabilityXMLList>0.9545</"), "{text}");
+    assert_eq!(write(&typed, None).expect_err("texts are no numbers").len(), 2);
+    typed["coverage_probability"] = json!(" ");
+    let faults = write(&typed, Some("auto")).expect_err("a blank text is none");
+    assert_eq!((faults.len(), faults[0].code), (1, Code::Missing));
 }
 
 #[test]

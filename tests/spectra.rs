@@ -81,6 +81,22 @@ fn without_a_unit_nobody_knows_whether_it_is_linear() {
 }
 
 #[test]
+fn the_columns_are_there_to_choose_from_where_the_unit_is_wanting() {
+    let typed =
+        json!({ "source": { "spectrum": { "table": { "text": "nm;Level\n1549;-31\n1550;-20\n" } } } });
+    let found = door::understand(&tree(&typed), "auto");
+    let reading = &found.tables["/source/spectrum"];
+    let units: Vec<Option<&str>> =
+        reading.columns.iter().map(|column| column.unit.map(|unit| unit.name())).collect();
+    assert_eq!((units, reading.rows_read), (vec![Some("nm"), None], 0));
+    assert_eq!(found.faults.len(), 1);
+    assert_eq!(found.faults[0].pointer, "/source/spectrum/points");
+    // A text without rows has no columns.
+    let none = json!({ "source": { "spectrum": { "table": { "text": "none" } } } });
+    assert!(door::understand(&tree(&none), "auto").tables.is_empty());
+}
+
+#[test]
 fn rows_that_are_no_points_are_named_and_the_others_kept() {
     let text =
         "nm;W/nm\n1500;1\n1510;-0.1\n100;1\n1520;9.91E37\n1530;two\n1540;3 dBm\n1550;2\n1550;4\n1545;1\n";

@@ -210,6 +210,72 @@ fn what_cannot_be_calibrated_says_why() {
     );
 }
 
+#[test]
+fn what_no_certificate_can_state_is_refused() {
+    // Two blocks that scatter, and a reference nearly without doubt: one degree of freedom, where Student's factor is
+    // 12.7 at 95 % (JCGM 100:2008, table G.2) and a certificate's k ends at 10.
+    let sure = json!({ "meter": { "certificate": { "form": "correction_factor", "coverage_factor": 2, "points": [
+        { "wavelength_nm": 1550, "value": 1, "expanded_percent": 1e-6 },
+        { "wavelength_nm": 1600, "value": 1, "expanded_percent": 1e-6 },
+    ] } } });
+    let scattered = READINGS.replace("-20.56", "-20.66");
+    let faults = calibrate(&scattered, &sure, &choices()).expect_err("k is too great");
+    assert_eq!(pointers(&faults), [("", Code::Range)]);
+    assert!(faults[0].sentence.contains("it would be 12.7. Take more blocks."), "{}", faults[0].sentence);
+    // Eight blocks of the same scatter leave seven degrees of freedom, and 2.4.
+    let rows: String = scattered.lines().skip(1).map(|line| format!("{line}\n")).collect();
+    let many = calibrate(&format!("{scattered}{}", rows.repeat(3)), &sure, &choices()).expect("eight blocks");
+    let k = many.certificate.coverage_factor.expect("k");
+    assert!((k - 2.36).abs() < 0.005, "{k}");
+}
+
+#[test]
+fn a_typed_calibration_is_followed_as_far_as_it_goes() {
+    let typed = json!({ "meter": { "certificate": {
+        "table": { "text": "nm;R / (A/W);U / %\n1310;0,92;1,1\n1550;0,98;1,2\n" }, "coverage_factor": "2",
+    } } });
+    let follow = |text: &str, bench: &Value, choices: &Value| {
+        door::follow_transfer(text, &tree(bench), &tree(choices), "auto")
+    };
+    let bare = READINGS.replace("nm;which;dBm\n", "");
+    let found = follow(&bare, &typed, &json!({}));
+    assert!(found.transfer.is_none());
+    assert_eq!(
+        pointers(&found.faults),
+        [
+            ("/choices/date", Code::Missing),
+            ("/choices/reference_certificate", Code::Missing),
+            ("/readings", Code::Missing),
+        ]
+    );
+    // The columns are there to be chosen from, though nothing can be read yet.
+    assert_eq!(found.tables["/readings"].columns.len(), 3);
+    assert_eq!(found.tables["/readings"].rows_read, 0);
+    assert_eq!(found.tables["/meter/certificate"].rows_read, 2);
+    let mut said = choices();
+    said["table"] = json!({ "columns": [{ "index": 2, "role": "power", "unit": "dBm" }] });
+    said["contributions"] =
+        json!([{ "name": "connectors", "standard_percent": "0,3 %", "degrees_of_freedom": "" }]);
+    said["coverage_probability"] = json!("95,45 %");
+    let found = follow(&bare, &typed, &said);
+    let strict = json!({ "meter": { "certificate": { "form": "responsivity", "coverage_factor": 2, "points": [
+        { "wavelength_nm": 1310, "value": 0.92, "expanded_percent": 1.1 },
+        { "wavelength_nm": 1550, "value": 0.98, "expanded_percent": 1.2 },
+    ] } } });
+    let mut numbers = said.clone();
+    numbers["contributions"] = json!([{ "name": "connectors", "standard_percent": 0.3 }]);
+    numbers["coverage_probability"] = json!(0.9545);
+    assert_eq!(found.transfer, Some(calibrate(&bare, &strict, &numbers).expect("the same in numbers")));
+    // A blank size is missing, and a reference that cannot be read is said once.
+    said["contributions"][0]["standard_percent"] = json!(" ");
+    let mut broken = typed.clone();
+    broken["meter"]["certificate"]["table"]["text"] = json!("no table");
+    let found = follow(&bare, &broken, &said);
+    let at: Vec<&str> = found.faults.iter().map(|fault| fault.pointer.as_str()).collect();
+    assert!(at.contains(&"/choices/contributions/0/standard_percent"), "{at:?}");
+    assert_eq!(at.iter().filter(|at| at.starts_with("/meter")).count(), 1, "{:?}", found.faults);
+}
+
 fn taken_back(csv: &str) -> CertificateTable {
     read_certificate(csv, &Choices::default()).unwrap_or_else(|faults| panic!("{csv}: {faults:?}"))
 }

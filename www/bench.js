@@ -16,6 +16,12 @@ export const DETECTOR_TYPE = "detector-type";
 /** Under this name stand a table's choices (how its text is to be read), as JSON. @param {string} name */
 export const choicesOf = (name) => `${name}#choices`;
 
+/** Whose text it is by its name: that of a job such as `transfer/date`; blank for the bench's. @param {string} name */
+export const areaOf = (name) => /^([a-z]+)\//.exec(name)?.[1] ?? "";
+
+/** The texts of one's areas alone. @param {Texts} texts @param {(area: string) => boolean} wanted @returns {Texts} */
+export const ofAreas = (texts, wanted) => Object.fromEntries(Object.entries(texts).filter(([name]) => wanted(areaOf(name))));
+
 /** Whether a control takes part: every alternative it stands in is the chosen one. @param {Control} control @param {Texts} texts */
 export function takesPart(control, texts) {
   return control.when.every(([name, value]) => texts[name] === value);

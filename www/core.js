@@ -89,6 +89,10 @@ export const core = {
     guarded((door) => door.follow(question, typed, mark), { understood: {}, tables: {}, faults: failed(), blocking: failed(), answer: null, uncertainty: null }),
   read_certificate: (text, choices) => guarded((door) => door.read_certificate(text, choices), { faults: failed() }),
   read_responsivity: (text, choices) => guarded((door) => door.read_responsivity(text, choices), { faults: failed() }),
+  follow_transfer: (text, typed, choices, mark) =>
+    guarded((door) => door.follow_transfer(text, typed, choices, mark), { understood: {}, tables: {}, faults: failed(), transfer: null }),
+  read_dcc: (text, choices) => guarded((door) => door.read_dcc(text, choices), { faults: failed() }),
+  write_dcc: (bench, administration, mark) => guarded((door) => door.write_dcc(bench, administration, mark), { faults: failed() }),
   read_bench: (text) => guarded((door) => door.read_bench(text), { faults: failed() }),
   write_number: (pointer, value, mark) => guarded((door) => door.write_number(pointer, value, mark), String(value)),
   write_doubts: (bench, mark) => guarded((door) => door.write_doubts(bench, mark), { faults: failed() }),

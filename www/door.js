@@ -1,7 +1,7 @@
 /**
  * What crosses the door, in types. There is no code here: the core computes, the page shows.
  *
- * @typedef {{ pointer: string, code: string, given?: unknown, allowed?: unknown, sentence: string }} Fault
+ * @typedef {{ pointer: string, code: string, given?: unknown, allowed?: any, sentence: string }} Fault
  * @typedef {{ name: string, asks: string, fields: string[], uncertain: [name: string, says: string][] }} Question
  * @typedef {{ question: string, name: string, pointer: string, stated: string, amount: string, distribution: string, times: string, note: string }} UsualDoubt
  * @typedef {{ pointer: string, name: string, unit: string, allowed?: unknown, usual: string }} Field
@@ -37,6 +37,19 @@
  * @typedef {{ reading: LogReading, counts: Record<string, number>, curves: Curve[], shown: Shown } & Record<string, unknown>} Log
  * @typedef {{ value?: Log, faults?: Fault[], reading?: LogReading | null }} LogOutcome what the worker makes of a log
  *
+ * @typedef {{ understood: Record<string, string>, tables: Record<string, Reading>, faults: Fault[], transfer: Transfer | null }} FollowedTransfer
+ * @typedef {{
+ *   reference: string, test: string, certificate: Certificate, coverage_probability: number,
+ *   history: { reference_device: string, reference_certificate: string, lines: string[] }, csv: string, shown: Shown
+ * }} Transfer
+ * @typedef {{ form: string, coverage_factor: number | null, points: { wavelength_nm: number, value: number, expanded_percent: number | null }[] }} Certificate
+ * @typedef {{ index: number, name: string, place: string, ref_type: string, unit: string, kind: string, count: number, first: number | null, last: number | null, has_uncertainty: boolean, coverage_factor: number | null }} DccQuantity
+ * @typedef {{
+ *   schema_version: string, identifier: string, laboratory: string, item: string, end_date: string, signed: boolean,
+ *   quantities: DccQuantity[], taken: { wavelength: number | null, value: number | null, expanded: number | null, form: string | null },
+ *   guessed: boolean, certificate: (Certificate & { bad_points: { number: number, sentence: string }[] }) | null, notes: string[]
+ * }} DccReading
+ *
  * @typedef {Record<string, any>} Bench
  *
  * @typedef {{
@@ -46,6 +59,9 @@
  *   follow(question: string, typed: Bench, mark: Mark): Followed,
  *   read_certificate(text: string, choices?: unknown): { value?: ReadTable, faults?: Fault[] },
  *   read_responsivity(text: string, choices?: unknown): { value?: ReadTable, faults?: Fault[] },
+ *   follow_transfer(text: string, typed: Bench, choices: unknown, mark: Mark): FollowedTransfer,
+ *   read_dcc(text: string, choices?: unknown): { value?: DccReading, faults?: Fault[] },
+ *   write_dcc(bench: Bench, administration: unknown, mark?: Mark): { value?: string, faults?: Fault[] },
  *   read_bench(text: string): { value?: Bench, faults?: Fault[] },
  *   write_number(pointer: string, value: number, mark: Mark): string,
  *   write_doubts(bench: Bench, mark: Mark): { value?: object | null, faults?: Fault[] },

@@ -168,7 +168,7 @@ export function ownerOf(pointer, all, texts) {
 
 /** "Source: wavelength", for a sentence. @param {string} name */
 export function labelOf(name) {
-  const input = inputOf(name);
+  const input = inputOf(name) ?? /** @type {Input | undefined} */ (document.getElementsByName(name)[0]);
   const part = document.getElementById(`part-${name.split("/")[1]}`)?.textContent ?? "";
   const label = input?.labels?.[0]?.textContent?.trim() ?? (input ? name : "");
   if (!part) return label || name;
@@ -197,6 +197,7 @@ export function showFaults(faults, all, texts) {
     const found = places.get(place);
     place.hidden = !found;
     place.classList.toggle("missing", !!found?.faults.every(({ code }) => code === "missing"));
+    if (found) place.closest("details")?.setAttribute("open", "");
     setText(place, found ? [...new Set(found.faults.map(({ sentence }) => sentence))].join(" ") : "");
   }
   const wrong = new Map([...places.values()].map(({ input, faults: own }) => [input, own]));

@@ -1,9 +1,10 @@
 /** Keeping answers: what the buttons of the notebook do. */
 
+import { ofAreas } from "./bench.js";
 import { say } from "./copy.js";
 import { byId, inputById } from "./dom.js";
 import { labelOf } from "./fields.js";
-import { change, goodAnswer, questions, state, understoodBench, version } from "./live.js";
+import { asksOf, change, goodAnswer, state, understoodBench, version } from "./live.js";
 import * as notebook from "./notebook.js";
 import { notebookView } from "./notebook-view.js";
 import { load, onForeignChange, save } from "./store.js";
@@ -35,14 +36,17 @@ export const notebookText = () => notebook.fileText(kept, version);
 /** @param {Kept[]} more */
 export const take = (more) => setKept(notebook.joined(kept, more));
 
+/** An answer is kept with the bench and with its own job's texts, and nothing of other jobs or persons. @param {string} question */
+const belongsTo = (question) => (/** @type {string} */ area) => area === "" || area === question;
+
 export function keep() {
   const answer = goodAnswer();
   if (!answer) return;
   const { bench } = understoodBench();
-  const asks = questions.find(({ name }) => name === state.question)?.asks ?? state.question;
+  const asks = asksOf(state.question);
   const when = new Date().toISOString();
   const id = `${when}-${Math.random().toString(36).slice(2, 8)}`;
-  setKept([{ id, when, question: state.question, asks, title: state.texts["/title"] ?? "", note: "", version, texts: { ...state.texts }, bench, answer }, ...kept]);
+  setKept([{ id, when, question: state.question, asks, title: state.texts["/title"] ?? "", note: "", version, texts: ofAreas(state.texts, belongsTo(state.question)), bench, answer }, ...kept]);
   say("Kept in the notebook");
 }
 
@@ -64,7 +68,8 @@ const deeds = {
   reopen(entry) {
     state.question = entry.question;
     reopened();
-    change(entry.texts, null, `Reopened ${entry.title || "a bench"}`);
+    const others = ofAreas(state.texts, (area) => !belongsTo(entry.question)(area));
+    change({ ...others, ...entry.texts }, null, `Reopened ${entry.title || "a bench"}`);
     say("The bench of this answer is back on the bench; undo brings yours back");
   },
   remove(entry) {

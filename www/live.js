@@ -1,13 +1,13 @@
 /** From what was typed to what is shown: the state of the page, and everything that follows from it. */
 
 import { answerView } from "./answer.js";
-import { choicesOf, takesPart, textsOf, typed } from "./bench.js";
+import { choicesOf, ofAreas, takesPart, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
 import { DOUBTS, doubtsOf, shortly } from "./doubts/text.js";
 import { showDoubts, showOffers } from "./doubts/view.js";
-import { addNotes, controls, fill, firstChoices, labelOf, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
+import { addNotes, controls, fill, firstChoices, form, labelOf, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
@@ -36,6 +36,16 @@ const usual = core.usual_doubts();
 
 /** @type {{ texts: Texts, history: import("./history.js").History, question: string, mark: Mark, demo: boolean }} */
 export const state = { texts: {}, history: emptyHistory(), question: questions[0]?.name ?? "", mark: "auto", demo: true, ...soundState(load("state", {})) };
+/**
+ * What can be done in the place of a question, with texts of its own: `follow` makes an answer of them, or says what it waits for.
+ *
+ * @typedef {{ name: string, focus: () => void }} Wait
+ * @typedef {{ asks: string, panel: HTMLElement, follow(): { answer: Answer | null, waits: Wait[] }, deeds(): HTMLElement[] }} Job
+ * @type {Map<string, Job>}
+ */
+export const jobs = new Map();
+/** What the one asked asks. */
+export const asksOf = (/** @type {string} */ name) => questions.find((question) => question.name === name)?.asks ?? jobs.get(name)?.asks ?? name;
 /** The last good answer of each question. @type {Map<string, Answer>} */
 const good = new Map();
 /** What a file could not be read for. @type {string[]} */
@@ -72,29 +82,36 @@ export function update() {
   const { texts, mark } = state;
   fill(texts);
   showAlternatives(texts);
+  const job = jobs.get(state.question);
+  for (const [name, { panel }] of jobs) panel.hidden = name !== state.question;
   const question = questions.find(({ name }) => name === state.question) ?? questions[0];
   if (!question) return;
-  const { understood, tables, faults, blocking, answer: live, uncertainty } = core.follow(question.name, typed(all, texts), mark);
-  const answer = live && (checkedAnswer(question.name, texts) ?? live);
+  const bench = typed(all, texts);
+  const { understood, tables, faults, ...rest } = job ? core.understand(bench, mark) : core.follow(question.name, bench, mark);
   showUnderstood(texts, understood);
-  showTables(texts, tables, changeChoices);
-  showUse(question.fields);
-  if (answer) {
-    good.set(question.name, answer);
-    byId("banner").hidden = true;
-  }
+  showTables(form(), texts, tables, changeChoices);
+  showUse(job ? [] : question.fields);
   const ofDoubts = faults.filter(({ pointer }) => under(pointer, DOUBTS));
   showSummary(showFaults(faults.filter((fault) => !ofDoubts.includes(fault)), all, texts));
   showDoubts({ texts, question, numbers: numbersOf(question), usual, faults: ofDoubts, understood, change });
   showOffers();
   showDoubtful((pointer) => shortly(doubtsOf(texts), pointer));
-  showTrials(question.name, texts, !!uncertainty);
-  showAnswer(question.name, blocking);
+  const name = job ? state.question : question.name;
+  const { answer, waits } = job?.follow() ?? asked("blocking" in rest ? rest : { answer: null, blocking: [] }, name);
+  if (answer) {
+    good.set(name, answer);
+    byId("banner").hidden = true;
+  }
+  if ("uncertainty" in rest) showTrials(name, texts, !!rest.uncertainty);
+  showAnswer(name, waits);
   showTools();
-  for (const part of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-question]"))) part.hidden = part.dataset.question !== question.name;
+  for (const part of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-question]"))) part.hidden = part.dataset.question !== name;
   for (const follow of followers) follow();
   save("state", state);
 }
+
+/** A question's answer, checked by trials where that was done, and what it waits for. @param {{ answer: Answer | null, blocking: Fault[] }} followed @param {string} name */
+const asked = ({ answer, blocking }, name) => ({ answer: answer && (checkedAnswer(name, state.texts) ?? answer), waits: waitsOf(blocking) });
 
 /** The numbers of a question that stand on the bench now. @param {import("./door.js").Question} question */
 function numbersOf(question) {
@@ -103,39 +120,45 @@ function numbersOf(question) {
   return here.map(({ name }) => ({ pointer: name, label: labelOf(name) }));
 }
 
-/** @param {string} question @param {Fault[]} faults */
-function showAnswer(question, faults) {
-  const found = good.get(question);
+/** @param {string} name @param {Wait[]} waits */
+function showAnswer(name, waits) {
+  const found = good.get(name);
   const answer = byId("answer");
   const [head, ...rest] = found ? answerView(found, state.mark) : [];
   byId("answer-head").replaceChildren(...(head ? [head] : []));
   byId("answer-rest").replaceChildren(...rest);
-  byId("doubts").hidden = !found;
-  const stale = faults.length > 0;
+  byId("doubts").hidden = !found || jobs.has(name);
+  const stale = waits.length > 0;
   answer.classList.toggle("stale", stale);
   const line = byId("state-line");
   line.hidden = !stale;
-  const owners = [...new Set(faults.map(({ pointer }) => ownerOf(pointer, all, state.texts)?.name ?? pointer))];
-  const says = found ? "This is the last good answer. It waits for: " : "To answer, the bench still needs: ";
-  if (stale) line.replaceChildren(says, ...joinedBy(faultLinks(faults, owners), ", "), ".");
-  const keepButton = /** @type {HTMLButtonElement | null} */ (document.getElementById("keep"));
-  if (keepButton) keepButton.disabled = stale;
+  const links = waits.map(({ name: says, focus }) => h("button", { type: "button", class: "link", click: focus }, says));
+  const says = found ? "This is the last good answer. It waits for: " : `To answer, ${jobs.has(name) ? "there is" : "the bench"} still need${jobs.has(name) ? "ed" : "s"}: `;
+  if (stale) line.replaceChildren(says, ...joinedBy(links, ", "), ".");
+  const deeds = jobs.get(name)?.deeds() ?? [];
+  answer.querySelector(".actions")?.prepend(...deeds);
+  // One thing is the main one.
+  if (deeds.length > 0) document.getElementById("keep")?.classList.remove("main");
+  for (const button of /** @type {NodeListOf<HTMLButtonElement>} */ (answer.querySelectorAll("#keep, [data-deed]"))) button.disabled = stale;
   const mini = byId("mini");
   mini.hidden = !found;
   setText(mini, found ? `${stale ? "Waiting; last: " : ""}${marked(found.shown.headline.figure, state.mark)}` : "");
 }
 
-/** @param {Fault[]} faults @param {string[]} names */
-function faultLinks(faults, names) {
-  return names.map((name) => {
-    const fault = faults.find(({ pointer }) => (ownerOf(pointer, all, state.texts)?.name ?? pointer) === name);
+/** What stands between a question and its answer, each field once. @param {Fault[]} faults @returns {Wait[]} */
+function waitsOf(faults) {
+  /** @type {Map<string, Wait>} */
+  const waits = new Map();
+  for (const { pointer } of faults) {
+    const owner = ownerOf(pointer, all, state.texts);
+    const name = owner?.name ?? pointer;
     const focus = () => {
-      const owner = fault && ownerOf(fault.pointer, all, state.texts);
       const target = owner?.input ?? owner?.place.closest("[data-part]")?.querySelector("input, select, textarea");
       /** @type {HTMLElement | null | undefined} */ (target)?.focus();
     };
-    return h("button", { type: "button", class: "link", click: focus }, name);
-  });
+    if (!waits.has(name)) waits.set(name, { name, focus });
+  }
+  return [...waits.values()];
 }
 
 /** @param {Node[]} nodes @param {string} between @returns {(Node | string)[]} */
@@ -175,11 +198,14 @@ function stepName(changes) {
   return others.length > 0 ? `${step} and ${others.length} more` : step;
 }
 
-/** @param {string} name @param {Record<string, unknown> | null} choices */
-function changeChoices(name, choices) {
+/** How a table is to be read. @param {string} name @param {Record<string, unknown> | null} choices */
+export function changeChoices(name, choices) {
   const others = forgetting(state.texts, name);
   change(choices ? { ...others, [choicesOf(name)]: JSON.stringify(choices) } : others, null);
 }
+
+/** What was typed elsewhere than on the bench, and stays when another bench is put there. */
+export const besideBench = () => ofAreas(state.texts, (area) => area !== "");
 
 /** Puts a bench into the form. @param {Bench} bench @param {string} name of the step */
 export function put(bench, name) {
@@ -188,7 +214,18 @@ export function put(bench, name) {
     table: (/** @type {string} */ pointer) => core.write_table(pointer, bench, state.mark).value ?? "",
     doubts: () => core.write_doubts(bench, state.mark).value ?? null,
   };
-  change({ ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
+  change({ ...besideBench(), ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
+}
+
+/** Puts a certificate on the bench as if it were typed, and leaves the rest. @param {import("./door.js").Certificate} certificate @param {string} name of the step */
+export function putCertificate(certificate, name) {
+  const at = "/meter/certificate";
+  const points = core.write_table(at, { meter: { certificate } }, state.mark).value ?? "";
+  const k = certificate.coverage_factor;
+  const factor = k ? core.write_number(`${at}/coverage_factor`, k, state.mark) : "";
+  // The form stands in the table's header; correlation and scale were said of the other certificate.
+  const texts = { [`${at}/points`]: points, [`${at}/coverage_factor`]: factor, [`${at}/form`]: "", [`${at}/point_correlation`]: "", [`${at}/scale`]: "" };
+  change({ ...forgetting(state.texts, `${at}/points`), ...texts }, null, name);
 }
 
 /** @param {typeof undone} step @param {string} says */

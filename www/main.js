@@ -3,6 +3,7 @@
 import { DETECTOR_TYPE } from "./bench.js";
 import { say } from "./copy.js";
 import { core } from "./core.js";
+import { isXml, openDcc, prepareDcc, saveDcc } from "./dcc.js";
 import { byId, h, inputById, setText } from "./dom.js";
 import { doubtsOf, withDoubts } from "./doubts/text.js";
 import { addDoubt } from "./doubts/view.js";
@@ -10,16 +11,20 @@ import { firstChoices, form, inputOf, labelOf } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
-import { change, put, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { besideBench, change, jobs, put, putCertificate, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
 import { startLog } from "./log/panel.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
 import { cancel, run } from "./doubts/trials.js";
+import { prepareTransfer } from "./transfer.js";
 
 /** @typedef {import("./door.js").Mark} Mark */
 
+const CERTIFICATE = "/meter/certificate/points";
+
 /** A bench or a notebook, whichever the text is. @param {string} text @param {string} name */
 function open(text, name) {
+  if (isXml(text)) return openCertificate(text, name);
   if (notebook.claims(text)) {
     const found = notebook.read(text);
     sayFileFaults("sentence" in found ? [`${name}: ${found.sentence}`] : []);
@@ -39,21 +44,31 @@ function open(text, name) {
   }
 }
 
+/** A digital certificate, for the meter on the bench. @param {string} text @param {string} from */
+function openCertificate(text, from) {
+  openDcc(text, from, ({ certificate, identifier }) => putCertificate(certificate, `Certificate ${identifier} from ${from}`));
+}
+
 function saveBench() {
   const { bench, faults } = understoodBench();
   saveFile(`${fileName(bench.title ?? "")}.bench.json`, "application/json", `${JSON.stringify(bench, null, 2)}\n`);
   if (faults.length > 0) say("Saved without what cannot be read");
 }
 
+/** What can be asked or done, by name. */
+const choices = () => [...questions, ...[...jobs].map(([name, { asks }]) => ({ name, asks }))];
+
+/** @param {string} name */
+function pick(name) {
+  state.question = name;
+  history.replaceState(null, "", `#${name}`);
+  update();
+}
+
 function showChooser() {
-  const radios = questions.map(({ name, asks }) => {
-    const pick = () => {
-      state.question = name;
-      history.replaceState(null, "", `#${name}`);
-      update();
-    };
-    return h("label", {}, h("input", { type: "radio", name: "question", value: name, checked: name === state.question, change: pick }), h("span", {}, asks));
-  });
+  const radios = choices().map(({ name, asks }) =>
+    h("label", {}, h("input", { type: "radio", name: "question", value: name, checked: name === state.question, change: () => pick(name) }), h("span", {}, asks)),
+  );
   byId("chooser").replaceChildren(h("legend", { class: "unseen" }, "Question"), ...radios);
 }
 
@@ -62,6 +77,11 @@ form().addEventListener("input", (event) => {
   // The selects beneath a table are no fields of the bench.
   if (!input.name) return;
   const { value, name } = input;
+  if (name === CERTIFICATE && isXml(value)) {
+    input.value = state.texts[name] ?? "";
+    openCertificate(value, "the clipboard");
+    return;
+  }
   const texts = { ...(value.trim() === "" ? forgetting(state.texts, name) : state.texts), [name]: value };
   change(texts, input instanceof HTMLSelectElement ? null : name);
 });
@@ -95,16 +115,30 @@ for (const key of /** @type {const} */ (["trials", "seed", "adaptive"])) {
 byId("trials-run").addEventListener("click", () => run(state.question, state.texts, () => understoodBench().bench, update));
 byId("trials-cancel").addEventListener("click", () => cancel(update));
 
-for (const button of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-open-table]"))) {
+for (const button of /** @type {NodeListOf<HTMLElement>} */ (form().querySelectorAll("[data-open-table]"))) {
   const id = button.dataset.openTable ?? "";
   const area = /** @type {HTMLTextAreaElement} */ (byId(id));
   const take = (/** @type {string} */ text, /** @type {string} */ file) => {
+    if (area.name === CERTIFICATE && isXml(text)) return openCertificate(text, file);
     change({ ...forgetting(state.texts, area.name), [area.name]: text }, null, `${labelOf(area.name)} from ${file}`);
     say(`Read ${file}`);
   };
   opens(button, `${id}-file`, take);
   takesDrops(area, take);
 }
+for (const button of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-ask]"))) {
+  button.addEventListener("click", () => {
+    pick(button.dataset.ask ?? "");
+    showChooser();
+    byId("question").scrollIntoView({ block: "start" });
+    byId("question").focus({ preventScroll: true });
+  });
+}
+byId("dcc-save-open").addEventListener("click", () => {
+  const certificate = understoodBench().bench.meter?.certificate;
+  if (certificate) saveDcc(certificate);
+  else say("There is no certificate to be saved yet");
+});
 opens(byId("bench-open"), "bench-file", open);
 opens(byId("notebook-open"), "notebook-file", open);
 takesDrops(document.documentElement, open);
@@ -112,7 +146,7 @@ byId("bench-save").addEventListener("click", saveBench);
 byId("notebook-save").addEventListener("click", () => saveFile("leastlight.notebook.json", "application/json", notebookText()));
 byId("bench-clear").addEventListener("click", () => {
   state.demo = false;
-  change({ ...firstChoices(), [DETECTOR_TYPE]: "pin" }, null, "Started empty");
+  change({ ...besideBench(), ...firstChoices(), [DETECTOR_TYPE]: "pin" }, null, "Started empty");
   inputOf("/source/wavelength_nm")?.focus();
 });
 byId("undo").addEventListener("click", () => walk(undone, "Undone"));
@@ -148,7 +182,7 @@ byId("answer").addEventListener("click", (event) => {
 
 function toHash() {
   const name = decodeURIComponent(location.hash.slice(1));
-  if (questions.some((question) => question.name === name)) state.question = name;
+  if (choices().some((one) => one.name === name)) state.question = name;
   showChooser();
   update();
 }
@@ -157,13 +191,15 @@ byId("colophon").textContent = `Leastlight ${version}. Works offline; nothing le
 addEventListener("beforeprint", () => {
   document.body.setAttribute("data-printed", `Leastlight ${version}, printed ${new Date().toLocaleString("sv")}`);
   // A box cuts its text off on paper; the text itself does not.
-  for (const area of form().querySelectorAll("textarea")) {
+  for (const area of document.querySelectorAll("textarea")) {
     const next = area.nextElementSibling;
     const paper = next?.matches(".printed") ? next : h("pre", { class: "printed", "aria-hidden": "true" });
     paper.textContent = area.value;
     area.after(paper);
   }
 });
+prepareDcc();
+prepareTransfer();
 startLog();
 Object.assign(window, { leastlight: core });
 toHash();

@@ -19,8 +19,23 @@ const ROLES = {
   correction_factor: { says: "correction factor, true over shown", units: ["1", "%", "dB"] },
   deviation: { says: "deviation of the reading", units: ["%", "dB"] },
   expanded: { says: "expanded uncertainty", units: ["%", "dB", "A/W", "mA/W", "1"] },
+  spectral_power: { says: "power", units: ["dBm/nm", "dBm", "dB", "W/nm", "mW/nm", "µW/nm", "nW/nm", "W", "mW", "µW", "nW", "pW", "1", "%"] },
+  detector: { says: "which meter", units: [] },
+  power: { says: "reading", units: ["dBm", "W", "mW", "µW", "nW", "pW"] },
+  time: { says: "time", units: ["s"] },
   ignored: { says: "nothing that is read", units: [] },
 };
+
+/** What the columns of each kind of table may hold. @type {Record<string, string[]>} */
+const COLUMNS = {
+  certificate: ["wavelength", "responsivity", "correction_factor", "deviation", "expanded", "ignored"],
+  responsivity: ["wavelength", "responsivity", "ignored"],
+  spectrum: ["wavelength", "spectral_power", "ignored"],
+  readings: ["wavelength", "detector", "power", "time", "ignored"],
+};
+
+/** Units that their own sign does not explain. @type {Record<string, string>} */
+const EXPLAINED = { 1: "1, linear", dB: "dB, relative" };
 
 /** The same for the columns of a log. @type {typeof ROLES} */
 const LOG_ROLES = {
@@ -43,9 +58,14 @@ const drawn = new WeakMap();
 /** The last way each table was read: what to show while its text cannot be read. @type {Map<string, Reading>} */
 const last = new Map();
 
-/** @param {Texts} texts @param {Record<string, Reading>} readings by the pointer of what the table stands for @param {Change} change */
-export function showTables(texts, readings, change) {
-  for (const box of /** @type {NodeListOf<HTMLElement>} */ (document.querySelectorAll("[data-table]"))) {
+/**
+ * @param {HTMLElement} form whose boxes these are
+ * @param {Texts} texts
+ * @param {Record<string, Reading>} readings by the pointer of what the table stands for
+ * @param {Change} change
+ */
+export function showTables(form, texts, readings, change) {
+  for (const box of /** @type {NodeListOf<HTMLElement>} */ (form.querySelectorAll("[data-table]"))) {
     const name = box.dataset.table ?? "";
     const place = /** @type {HTMLElement | null} */ (box.querySelector(".read-as"));
     if (!place) continue;
@@ -54,6 +74,7 @@ export function showTables(texts, readings, change) {
     const reading = now ?? last.get(name);
     const filled = (texts[name] ?? "").trim() !== "";
     place.hidden = !filled || !reading;
+    unfold(box, filled);
     if (!filled) last.delete(name);
     if (!filled || !reading) continue;
     const choices = parsedChoices(texts, name);
@@ -62,6 +83,16 @@ export function showTables(texts, readings, change) {
     drawn.set(place, key);
     redraw(place, view(reading, choices, !!now, box.dataset.reads ?? "", (to) => change(name, to)));
   }
+}
+
+/** A folded box opens when something comes into it; after that it is the person's. @type {WeakSet<Element>} */
+const seenFilled = new WeakSet();
+
+/** @param {Element} box @param {boolean} filled */
+function unfold(box, filled) {
+  if (filled && !seenFilled.has(box)) box.closest("details")?.setAttribute("open", "");
+  if (filled) seenFilled.add(box);
+  else seenFilled.delete(box);
 }
 
 /** Draws anew and leaves the focus where it was. @param {HTMLElement} place @param {HTMLElement[]} content */
@@ -83,7 +114,7 @@ export function redraw(place, content) {
 function view(reading, choices, current, kind, change) {
   const set = (/** @type {Record<string, unknown>} */ more) => change({ ...choices, ...more });
   return [
-    countsLine(reading, current ? `${reading.rows_read} rows` : "not read now"),
+    countsLine(reading, current && reading.rows_read > 0 ? `${reading.rows_read} rows` : "not read now"),
     h("div", { class: "read-choices" }, cutChoices(reading, set)),
     columnsView(reading, choices, kind, set),
     ...sentences(reading),
@@ -108,7 +139,7 @@ export const cutChoices = (reading, set) => [
 /** @param {Reading} reading @param {Record<string, any> | null} choices @param {string} kind @param {(more: Record<string, unknown>) => void} set */
 export function columnsView(reading, choices, kind, set) {
   const known = kind === "log" ? LOG_ROLES : ROLES;
-  const roles = kind === "certificate" || kind === "log" ? Object.keys(known) : ["wavelength", "responsivity", "ignored"];
+  const roles = kind === "log" ? Object.keys(known) : (COLUMNS[kind] ?? []);
   const names = Object.fromEntries(roles.map((role) => [role, known[role]?.says ?? role]));
   const choose = (/** @type {Column} */ column, /** @type {Partial<Column>} */ to) => {
     const { index, role, unit } = { ...column, ...to };
@@ -128,11 +159,18 @@ export function columnsView(reading, choices, kind, set) {
       {},
       h("th", { scope: "row" }, column.header || name),
       h("td", {}, bare(`role-${column.index}`, `${name} holds`, names, column.role, (role) => choose(column, { role }))),
-      h("td", {}, units.length > 0 && bare(`unit-${column.index}`, `Unit of column ${column.index + 1}`, Object.fromEntries(units.map((unit) => [unit, unit])), column.unit ?? "", (unit) => choose(column, { unit }))),
+      h("td", {}, units.length > 0 && bare(`unit-${column.index}`, `Unit of column ${column.index + 1}`, unitNames(units, column, kind), column.unit ?? "", (unit) => choose(column, { unit }))),
     );
   });
   const heads = ["Column", "holds", "in"].map((text) => h("th", { scope: "col" }, text));
   return h("table", { class: "read-columns" }, h("thead", {}, h("tr", {}, heads)), h("tbody", {}, rows));
+}
+
+/** Where the text names no unit, a person must. @param {string[]} units @param {Column} column @param {string} kind @returns {Record<string, string>} */
+function unitNames(units, column, kind) {
+  const says = (/** @type {string} */ unit) => (kind === "spectrum" ? (EXPLAINED[unit] ?? unit) : unit);
+  // The unit 1 looks like an index, and indices go first in an object.
+  return { ...(column.unit ? {} : { "": "choose…" }), ...Object.fromEntries(units.map((unit) => [unit, says(unit)])) };
 }
 
 /** What was made of the text, and the rows that are no points. @param {Reading} reading */

@@ -34,6 +34,11 @@ pub struct Limits {
 }
 
 impl Limits {
+    /// The greatest allowed value; infinite where there is none.
+    pub const fn greatest(&self) -> f64 {
+        self.max
+    }
+
     /// Both ends included.
     pub const fn between(min: f64, max: f64) -> Limits {
         Limits { min, max, min_open: false, max_open: false }

@@ -37,8 +37,8 @@ pub use log::{LogChoices, LogReading, LogRow, LogStream, Refused, SettingFrom, S
 pub use names::{DecimalMark, Delimiter, Role, Unit};
 pub use reading::{BadRow, Column, Reading};
 pub use responsivity::{ResponsivityTable, read_responsivity};
-pub use spectrum::{SpectrumTable, read_spectrum};
-pub use transfer::{Comparison, ReadBlock, read_comparison};
+pub use spectrum::{SpectrumTable, read_spectrum, spectrum_layout};
+pub use transfer::{Comparison, ReadBlock, comparison_layout, read_comparison};
 pub use write::{
     number_text, remark, write_certificate_points, write_responsivity_points, write_spectrum_points,
 };

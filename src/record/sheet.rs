@@ -70,6 +70,19 @@ pub(super) fn normal(text: &str) -> String {
 impl<'t> Sheet<'t> {
     /// Cuts a [`normal`] text.
     pub(super) fn open(text: &'t str, choices: &Choices, kind: &Kind) -> Result<Sheet<'t>, Faults> {
+        let (sheet, faults) = Sheet::cut(text, choices, kind)?;
+        if faults.is_empty() { Ok(sheet) } else { Err(faults) }
+    }
+
+    /// How a text is understood as far as that goes, for a person to choose what cannot be told from it: nothing where
+    /// it has no rows of numbers.
+    pub(super) fn layout(text: &str, choices: &Choices, kind: &Kind) -> Option<Reading> {
+        let text = normal(text);
+        Sheet::cut(&text, choices, kind).ok().map(|(sheet, _)| sheet.reading(0, Vec::new()))
+    }
+
+    /// Cuts a text into rows and finds what it can of the columns, with what is wrong or wanting.
+    fn cut(text: &'t str, choices: &Choices, kind: &Kind) -> Result<(Sheet<'t>, Faults), Faults> {
         if text.trim().is_empty() {
             let sentence = format!("{} is needed; the text is empty.", kind.name);
             return Err(vec![Fault::missing("", &sentence)]);
@@ -109,9 +122,13 @@ impl<'t> Sheet<'t> {
             skipped_lines,
             said,
         };
-        sheet.columns = sheet.placed(choices, kind)?;
-        sheet.mark = sheet.decided_mark(text, choices)?;
-        Ok(sheet)
+        let (columns, mut faults) = sheet.placed(choices, kind);
+        sheet.columns = columns;
+        match sheet.decided_mark(text, choices) {
+            Ok(mark) => sheet.mark = mark,
+            Err(open) => faults.extend(open),
+        }
+        Ok((sheet, faults))
     }
 
     /// The rows below the header that are no remarks.
@@ -175,10 +192,10 @@ impl<'t> Sheet<'t> {
     }
 
     /// Finds the columns: by choice, by the words of the header, else by their order.
-    fn placed(&mut self, choices: &Choices, kind: &Kind) -> Result<Vec<Placed>, Faults> {
+    fn placed(&mut self, choices: &Choices, kind: &Kind) -> (Vec<Placed>, Faults) {
         let width = self.headings.len();
         let beyond = choices.columns.iter().enumerate().filter(|(_, choice)| choice.index >= width);
-        let faults: Faults = beyond
+        let mut faults: Faults = beyond
             .map(|(at, choice)| {
                 let sentence = format!(
                     "The index must be below {width}, the number of columns; {} was given.",
@@ -188,9 +205,6 @@ impl<'t> Sheet<'t> {
                 Fault::new(&format!("/choices/columns/{at}/index"), Code::Range, given, &sentence)
             })
             .collect();
-        if !faults.is_empty() {
-            return Err(faults);
-        }
         let known = |role: Role| kind.words.iter().any(|(known, _)| *known == role);
         let mut roles: Vec<Option<Role>> = vec![None; width];
         for choice in &choices.columns {
@@ -228,7 +242,7 @@ impl<'t> Sheet<'t> {
                 kind.name,
                 missing.join(" and the ")
             );
-            return Err(vec![Fault::missing("", &sentence)]);
+            faults.push(Fault::missing("", &sentence));
         }
         let placed = roles.iter().enumerate().filter_map(|(index, role)| {
             let role = role.filter(|role| *role != Role::Ignored)?;
@@ -246,7 +260,7 @@ impl<'t> Sheet<'t> {
                 _ => None,
             };
         }
-        Ok(columns)
+        (columns, faults)
     }
 
     fn names(&self, index: usize, role: Role, words: &[&str]) -> bool {

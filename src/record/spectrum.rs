@@ -119,6 +119,12 @@ pub fn read_spectrum(text: &str, choices: &Choices) -> Result<SpectrumTable, Fau
     Ok(SpectrumTable { unit, points, reading })
 }
 
+/// How a text is understood as a spectrum as far as that goes, also where it cannot be read yet: so that a person can
+/// choose what it does not say. Nothing where it has no rows of numbers.
+pub fn spectrum_layout(text: &str, choices: &Choices) -> Option<Reading> {
+    Sheet::layout(text, choices, &KIND)
+}
+
 fn is_level(unit: Unit) -> bool {
     matches!(unit, Unit::Dbm | Unit::DbmPerNm | Unit::Decibel)
 }

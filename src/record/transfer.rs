@@ -40,7 +40,7 @@ pub struct ReadBlock {
 }
 
 const KIND: Kind = Kind {
-    name: "A transfer calibration",
+    name: "A table of readings",
     words: &[
         (Role::Power, &["reading", "indicat", "anzeige", "lecture", "lectura"]),
         (
@@ -126,6 +126,12 @@ pub fn read_comparison(text: &str, choices: &Choices, reference: Option<&str>) -
     sheet.said.push(format!("\"{reference}\" is the reference and \"{test}\" the detector under test."));
     let reading = sheet.reading(rows_read, bad_rows);
     Ok(Comparison { reference, test, blocks, has_times: time.is_some(), reading })
+}
+
+/// How a text is understood as readings as far as that goes, also where it cannot be read yet. Nothing where it has no
+/// rows of numbers.
+pub fn comparison_layout(text: &str, choices: &Choices) -> Option<Reading> {
+    Sheet::layout(text, choices, &KIND)
 }
 
 /// One reading.

@@ -71,6 +71,7 @@ const PLANTED = {
     "a folder of somebody's machine": [withScript(';var a="/home' + '/somebody/x"'), "a folder of the building machine"],
     "a folder inside the core": [withCore("/root" + "/registry/src"), "a folder of the building machine"],
     "an address inside the core": [withCore(`${scheme}//elsewhere.invalid/`), "an address"],
+    "an address inside the core, close upon another text": [withCore(`text${scheme}//elsewhere.invalid/`), "an address"],
     "a second script, which has no hash": [withMarkup("<script>1</script>"), "the policy is not"],
     "a script that changed after hashing": [page.replace(/(<script id="glue">)/, "$1 "), "the policy is not"],
     "a policy that allows more": [page.replace("connect-src 'none'", "connect-src *"), "the policy is not"],

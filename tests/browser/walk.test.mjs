@@ -2,12 +2,11 @@
 // complaints and requests all the while. What must be shown comes from the core for Node, asked beside the page.
 
 import assert from "node:assert/strict";
-import { existsSync, readFileSync, readdirSync } from "node:fs";
+import { readFileSync } from "node:fs";
 import { createRequire } from "node:module";
-import { join } from "node:path";
 import { after, before, describe, test } from "node:test";
-import { setTimeout as pause } from "node:timers/promises";
 
+import { waitForFile } from "./downloads.mjs";
 import { ENGINES, start } from "./engines.mjs";
 
 const door = createRequire(import.meta.url)("../../dist/node/leastlight.js");
@@ -195,7 +194,7 @@ for (const engine of ENGINES) {
         test("saves the bench as a file that the core reads, starts empty, and opens it again", async () => {
             const before = await headline();
             await person.run(() => document.getElementById("bench-save").click());
-            const file = await waitFor(() => findFile(person.scratch, /\.bench\.json$/));
+            const file = await waitForFile(person.scratch, /\.bench\.json$/);
             const { value, faults } = door.read_bench(readFileSync(file, "utf8"));
             assert.equal(faults, undefined);
             assert.equal(figure("reading", value), before);
@@ -335,21 +334,4 @@ for (const engine of ENGINES) {
             assert.deepEqual(person.listener.heard, []);
         });
     });
-}
-
-/** Downloads take a moment. */
-async function waitFor(find) {
-    for (let tries = 0; tries < 200; tries += 1) {
-        const found = find();
-        if (found) return found;
-        await pause(100);
-    }
-    throw new Error("waited 20 s in vain for a download");
-}
-
-function findFile(folder, pattern) {
-    if (!existsSync(folder)) return undefined;
-    const name = readdirSync(folder).find((one) => pattern.test(one));
-    const file = name && join(folder, name);
-    return file && readFileSync(file).length > 0 ? file : undefined;
 }

@@ -4,9 +4,12 @@ import assert from "node:assert/strict";
 import { describe, test } from "node:test";
 
 import { percent } from "../../www/answer.js";
-import { choicesOf, takesPart, textsOf, typed } from "../../www/bench.js";
+import { areaOf, choicesOf, ofAreas, takesPart, textsOf, typed } from "../../www/bench.js";
 import { scaleOf } from "../../www/chart/axis.js";
 import { bestPlace, overlap } from "../../www/chart/labels.js";
+import { FACTOR, READINGS, REFERENCE, asked, ownerName } from "../../www/comparison.js";
+import { USUAL, contributionsOf, isProposed, withContributions } from "../../www/contributions.js";
+import { administrationOf, ownerName as administrationOwner } from "../../www/dcc-administration.js";
 import { fileName } from "../../www/files.js";
 import { worthSaying } from "../../www/fields.js";
 import { closed, emptyHistory, recorded, redone, undone } from "../../www/history.js";
@@ -51,6 +54,12 @@ describe("a typed bench", () => {
         assert.equal(texts["/path/loss_db"], "3.5");
         assert.equal(typed(controls, texts).detector.responsivity.a_per_w, "0.9");
     });
+});
+
+test("texts of the bench and of a job are told apart by their names", () => {
+    for (const name of ["/path/loss_db", "/meter/certificate/points#choices", "detector-type"]) assert.equal(areaOf(name), "");
+    assert.equal(areaOf("transfer/readings#choices"), "transfer");
+    assert.deepEqual(ofAreas({ "/title": "a", "transfer/date": "b", "dcc/language": "c" }, (area) => area !== "dcc"), { "/title": "a", "transfer/date": "b" });
 });
 
 describe("undo", () => {
@@ -170,5 +179,55 @@ describe("axes and labels", () => {
         const box = bestPlace([{ x: 0, y: 0 }, { x: 190, y: 90 }], label, frame, taken, []);
         assert.equal(overlap(box, taken[0]), false);
         assert.ok(box.x + box.width <= 200 && box.y + box.height <= 100);
+    });
+});
+
+describe("a calibration by comparison", () => {
+    const texts = {
+        [REFERENCE]: "1550\t0.98\t1.1", [choicesOf(REFERENCE)]: '{"delimiter":"tab"}', [FACTOR]: "2", [READINGS]: "1550;A;-20",
+        "transfer/date": "2026-11-30", "transfer/reference": "A", "/path/loss_db": "3",
+    };
+
+    test("asks of its own texts, and of nothing on the bench", () => {
+        const { readings, bench, choices } = asked(withContributions(texts, [{ name: "connector", standard_percent: "0,4", degrees_of_freedom: "" }]));
+        assert.equal(readings, "1550;A;-20");
+        assert.deepEqual(bench, { meter: { certificate: { table: { text: "1550\t0.98\t1.1", choices: { delimiter: "tab" } }, coverage_factor: "2" } } });
+        assert.equal(choices.reference, "A");
+        assert.deepEqual(choices.contributions, [{ name: "connector", standard_percent: "0,4", degrees_of_freedom: "" }]);
+        assert.equal(asked({}).bench.meter, null);
+    });
+
+    test("knows the control that owns each fault", () => {
+        assert.equal(ownerName("/choices/date"), "transfer/date");
+        assert.equal(ownerName("/choices/contributions/1/standard_percent"), "transfer/contributions/1/standard_percent");
+        assert.equal(ownerName("/choices/contributions/1"), "transfer/contributions/1/name");
+        assert.equal(ownerName("/choices/table/columns/0"), READINGS);
+        assert.equal(ownerName("/readings"), READINGS);
+        assert.equal(ownerName("/meter/certificate/coverage_factor"), FACTOR);
+        assert.equal(ownerName("/meter/certificate/points/3"), REFERENCE);
+        assert.equal(ownerName("/meter"), REFERENCE);
+    });
+
+    test("keeps a list of contributions in one text, and finds a strange one harmless", () => {
+        const list = [{ name: USUAL[0][0], standard_percent: USUAL[0][1], degrees_of_freedom: "" }];
+        assert.deepEqual(contributionsOf(withContributions({}, list)), list);
+        assert.ok(isProposed(list[0]));
+        assert.equal(isProposed({ ...list[0], standard_percent: "0.05" }), false);
+        for (const odd of ["{", "3", "null", '[null,{"name":4}]']) assert.ok(contributionsOf({ "transfer/contributions": odd }).every(({ name }) => name === ""));
+    });
+});
+
+describe("what a digital certificate says beside its numbers", () => {
+    test("is nested by its names, without what is blank", () => {
+        const texts = { "dcc/language": "en", "dcc/item/name": " power meter ", "dcc/item/model": " ", "/title": "t" };
+        assert.deepEqual(administrationOf(texts, []), { language: "en", item: { name: "power meter" } });
+        assert.deepEqual(administrationOf({}, ["a"]), { history: ["a"] });
+    });
+
+    test("has each fault at its field, or at none", () => {
+        const names = ["dcc/language", "dcc/item/name", "dcc/item/model"];
+        assert.equal(administrationOwner("/administration/item/model", names), "dcc/item/model");
+        assert.equal(administrationOwner("/administration/item", names), "dcc/item/name");
+        assert.equal(administrationOwner("/meter/certificate/points", names), null);
     });
 });

@@ -10,8 +10,8 @@ import { pathToFileURL } from "node:url";
 /** Names of vocabularies: they look like addresses, and nothing is ever fetched from them. */
 const VOCABULARY = String.raw`\bhttp://www\.w3\.org/(?:2000/svg|1999/xhtml|1999/xlink|2000/xmlns/|2000/09/xmldsig#|XML/1998/namespace|1998/Math/MathML)`;
 const VOCABULARIES = new RegExp(String.raw`${VOCABULARY}(?![\w./-])`, "g");
-/** Inside the core one text stands right behind the other. */
-const VOCABULARIES_IN_CORE = new RegExp(VOCABULARY, "g");
+/** Inside the core one text stands right behind the other: those of certificates in XML are read and written there. */
+const VOCABULARIES_IN_CORE = /http:\/\/www\.w3\.org\/(?:2000\/xmlns\/|XML\/1998\/namespace|2000\/09\/xmldsig#)|https:\/\/ptb\.de\/(?:dcc|si)/g;
 
 /** Slashes may be missing from an address, but then a quotation mark or an attribute must hold it: a minifier's `a?ws:b` is none. */
 const ADDRESS = /\b(?:https?|wss?|ftp):\/+[\w[]|["'`=]\s*(?:https?|wss?|ftp):[\w[]|["'`(=]\s*\/\/[a-z0-9[]/gi;
@@ -23,6 +23,9 @@ const EVERYWHERE = [
     ["a peer connection, which the policy does not stop", /\bRTC(?:PeerConnection|DataChannel|IceTransport)\b/gi],
     ["a folder of the building machine", /(?<![\w.])\/(?:home|root|work|tmp|usr|var|opt|Users|builds?)\/[\w.@-]/g],
 ];
+
+/** What must not stand in the core. @type {[string, RegExp][]} */
+const IN_CORE = [["an address", /(?:https?|wss?|ftp):\/+[\w[]/gi], ...EVERYWHERE.filter(([, pattern]) => pattern !== ADDRESS)];
 
 /** What must not stand in a script. @type {[string, RegExp][]} */
 const IN_SCRIPT = [
@@ -85,7 +88,7 @@ function partsOf(page) {
  * @param {[string, RegExp][]} rules
  * @param {string} text
  * @param {string} where
- * @param {RegExp} vocabularies
+ * @param {RegExp} [vocabularies]
  */
 function search(rules, text, where, vocabularies = VOCABULARIES) {
     const readable = text.replace(vocabularies, "");
@@ -140,7 +143,7 @@ export function faultsOf(page, folders = []) {
         ...styles.flatMap((text) => search([...EVERYWHERE, ...IN_STYLE], text, "a style sheet")),
         ...scripts.flatMap((text) => search([...EVERYWHERE, ...IN_SCRIPT], text, "a script")),
         ...held("worker").flatMap((text) => search([...EVERYWHERE, ...IN_SCRIPT], text, "the worker")),
-        ...core.flatMap((text) => search(EVERYWHERE, text, "the core", VOCABULARIES_IN_CORE)),
+        ...core.flatMap((text) => search(IN_CORE, text, "the core", VOCABULARIES_IN_CORE)),
         ...folders
             .filter((folder) => folder.length > 1 && texts.some((text) => text.includes(`${folder}/`)))
             .map((folder) => `a folder of the building machine: ${folder}`),

@@ -109,6 +109,12 @@ fn outside_fault(spectrum: &Spectrum, outside: f64, (low, high): (f64, f64), cer
         nm(high)
     )
     .replace("The spectrum, ", "The spectrum ");
+    // An analyser's trace is never dark, and a wide one collects its floor.
+    let advice = match spectrum {
+        Spectrum::Gaussian { .. } => "",
+        Spectrum::Table(_) => " If that is only the analyser's noise, leave those rows out.",
+    };
+    let sentence = sentence + advice;
     let allowed = Allowed::Between { min: Some(low), max: Some(high), unit: "nm".to_owned() };
     Fault { allowed: Some(allowed), ..Fault::new(pointer, Code::Range, given, &sentence) }
 }

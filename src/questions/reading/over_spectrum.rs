@@ -32,7 +32,7 @@ pub fn curve(given: &Given) -> Option<Curve> {
         name: "spectrum_over_responsivity",
         title: "The light over the responsivity",
         x: Axis { label: "Wavelength", unit: "nm", scale: Scale::Linear },
-        y: Axis { label: "Relative to the highest", unit: "", scale: Scale::Linear },
+        y: Axis { label: "Relative to the highest, linear", unit: "", scale: Scale::Linear },
         lines: vec![relative("responsivity", responsivity.collect())?, relative("light", density)?],
         marks: vec![Mark::Level { name: "mean wavelength".to_owned(), axis: "x", at: *centre_nm }],
     })

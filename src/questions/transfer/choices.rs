@@ -2,8 +2,8 @@
 
 use crate::bench::field::Limits;
 use crate::bench::reader::Reader;
-use crate::fault::{Code, Fault, Faults};
-use crate::quantity::kind;
+use crate::fault::{Code, Fault};
+use crate::quantity::kind::{self, Kind};
 use crate::record::{Choices, is_date};
 use crate::statistics::transfer::Uncertain;
 use crate::tree::Tree;
@@ -67,9 +67,8 @@ const KEYS: [&str; 9] = [
 ];
 
 impl TransferChoices {
-    /// Reads choices; what is wrong or missing comes beside what is right.
-    pub fn from_tree(tree: &Tree, pointer: &str) -> (TransferChoices, Faults) {
-        let mut reader = Reader::strict();
+    /// Reads choices; what is wrong or missing is left with the reader.
+    pub fn read(tree: &Tree, pointer: &str, reader: &mut Reader) -> TransferChoices {
         let map = reader.part(Some(tree), pointer, &KEYS).unwrap_or(&Tree::Null);
         let table = map.get("table").unwrap_or(&Tree::Null);
         let table = Choices::from_tree(table, &format!("{pointer}/table"));
@@ -78,19 +77,16 @@ impl TransferChoices {
         let (reference, date) = (text("reference"), text("date"));
         let (certificate, device, test) =
             (text("reference_certificate"), text("reference_device"), text("test_device"));
-        let mut number = |key: &str, name: &str, limits: Limits| {
+        let mut number = |key: &str, name: &str, kind: &'static Kind, limits: Limits| {
             let at = format!("{pointer}/{key}");
-            reader.of_kind(map.get(key), &at, name, &kind::NUMBER, &limits).map(|number| number.value)
+            reader.of_kind(map.get(key), &at, name, kind, &limits).map(|number| number.value)
         };
-        let probability =
-            number("coverage_probability", "the coverage probability", Limits::between(0.5, 0.9999));
-        let degrees = number(
-            "reference_degrees_of_freedom",
-            "the degrees of freedom of the reference",
-            Limits::between(1.0, 1e9),
-        );
+        let (name, limits) = ("the coverage probability", Limits::between(0.5, 0.9999));
+        let probability = number("coverage_probability", name, &kind::FRACTION, limits);
+        let (name, limits) = ("the degrees of freedom of the reference", Limits::between(1.0, 1e9));
+        let degrees = number("reference_degrees_of_freedom", name, &kind::NUMBER, limits);
         let contributions =
-            contributions(map.get("contributions"), &format!("{pointer}/contributions"), &mut reader);
+            contributions(map.get("contributions"), &format!("{pointer}/contributions"), reader);
         if date.is_empty() {
             reader.missing(&format!("{pointer}/date"), "Needed: the date of the readings, as 2026-11-30.");
         } else if !is_date(&date) {
@@ -106,7 +102,7 @@ impl TransferChoices {
             let sentence = "Needed: the number of the reference's certificate, on which the new one rests.";
             reader.missing(&format!("{pointer}/reference_certificate"), sentence);
         }
-        let choices = TransferChoices {
+        TransferChoices {
             table,
             reference: Some(reference).filter(|reference| !reference.is_empty()),
             date,
@@ -116,8 +112,7 @@ impl TransferChoices {
             coverage_probability: probability.unwrap_or(USUAL_PROBABILITY),
             reference_degrees_of_freedom: degrees,
             contributions,
-        };
-        (choices, reader.faults)
+        }
     }
 }
 
@@ -132,17 +127,19 @@ fn contributions(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Vec
         if name.is_empty() {
             reader.missing(&format!("{at}/name"), "Each contribution needs a name.");
         }
-        let mut number = |key: &str, what: &str, limits: Limits| {
+        let mut number = |key: &str, what: &str, kind: &'static Kind, limits: Limits| {
             let place = format!("{at}/{key}");
-            reader.of_kind(map.get(key), &place, what, &kind::NUMBER, &limits).map(|number| number.value)
+            reader.of_kind(map.get(key), &place, what, kind, &limits).map(|number| number.value)
         };
-        let standard = number("standard_percent", "the standard uncertainty", Limits::between(0.0, 100.0));
-        let degrees = number("degrees_of_freedom", "the degrees of freedom", Limits::between(1.0, 1e9));
+        let (what, limits) = ("the standard uncertainty", Limits::between(0.0, 100.0));
+        let standard = number("standard_percent", what, &kind::PERCENT, limits);
+        let (what, limits) = ("the degrees of freedom", Limits::between(1.0, 1e9));
+        let degrees = number("degrees_of_freedom", what, &kind::NUMBER, limits);
         match standard {
             Some(standard_percent) => {
                 found.push(Contribution { name, standard_percent, degrees_of_freedom: degrees });
             }
-            None if map.get("standard_percent").is_none_or(Tree::is_null) => {
+            None if is_blank(map.get("standard_percent")) => {
                 let sentence = "Each contribution needs its standard uncertainty in per cent.";
                 reader.missing(&format!("{at}/standard_percent"), sentence);
             }
@@ -150,4 +147,13 @@ fn contributions(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Vec
         }
     }
     found
+}
+
+/// Whether nothing was given, or a text without a letter.
+fn is_blank(given: Option<&Tree>) -> bool {
+    match given {
+        None | Some(Tree::Null) => true,
+        Some(Tree::Text(text)) => text.trim().is_empty(),
+        Some(_) => false,
+    }
 }

@@ -8,10 +8,13 @@ use super::needs::Needs;
 use super::reading::certified::Certified;
 use super::shown::Shown;
 use crate::bench::Bench;
+use crate::bench::field::field;
 use crate::bench::meter::{Certificate, CertificateForm, CertificatePoint};
+use crate::bench::reader::Reader;
 use crate::fault::{Code, Fault, Faults};
 use crate::physics::decibel::db_from_ratio;
-use crate::record::{Comparison, ReadBlock, Reading, read_comparison};
+use crate::quantity::write::brief;
+use crate::record::{Comparison, ReadBlock, Reading, comparison_layout, read_comparison};
 use crate::statistics::transfer::{
     Block, Uncertain, combined, compared, coverage_factor, mean_and_deviation,
 };
@@ -22,6 +25,10 @@ use serde::Serialize;
 /// A calibration by comparison: the certificate that comes of it, and where it comes from.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Transfer {
+    /// The reference's label in the table.
+    pub reference: String,
+    /// The label of the detector under test.
+    pub test: String,
     /// How the table of readings was understood.
     pub reading: Reading,
     /// One a wavelength, in rising order.
@@ -99,20 +106,47 @@ const TABLE: &str = "/meter/certificate";
 /// Source: the definition of the correction factor in IEC 61315 used twice, for both meters in the same light; of the
 /// uncertainties, JCGM 100:2008, 4.2, 5.1 and G.4.
 pub fn transfer_calibration(text: &str, bench: &Bench, choices: &Tree) -> Result<Transfer, Faults> {
-    let (choices, mut faults) = TransferChoices::from_tree(choices, "/choices");
+    let Steps { faults, transfer, .. } = transfer_steps(text, bench, choices, Reader::strict());
+    transfer.ok_or(faults)
+}
+
+/// A calibration as far as it goes.
+#[derive(Debug)]
+pub struct Steps {
+    /// How the table of readings was understood, also where it cannot be read yet.
+    pub reading: Option<Reading>,
+    /// How typed numbers of the choices were read, by pointer.
+    pub understood: Vec<(String, String)>,
+    /// Everything that is wrong or missing.
+    pub faults: Faults,
+    /// The result; there is one where no fault is.
+    pub transfer: Option<Transfer>,
+}
+
+/// As [`transfer_calibration`], with what there is before everything is given; `reader` says whether numbers may be typed.
+pub fn transfer_steps(text: &str, bench: &Bench, choices: &Tree, mut reader: Reader) -> Steps {
+    let choices = TransferChoices::read(choices, "/choices", &mut reader);
+    let Reader { mut faults, understood, .. } = reader;
     let certified = reference(bench).map_err(|found| faults.extend(found)).ok();
     let comparison = read_comparison(text, &choices.table, choices.reference.as_deref());
     let comparison = comparison.map_err(|found| faults.extend(found)).ok();
+    let reading = comparison.as_ref().map(|comparison| comparison.reading.clone());
+    let reading = reading.or_else(|| comparison_layout(text, &choices.table));
     let rows = match (&certified, &comparison) {
         (Some(certified), Some(comparison)) => {
             rows(certified, comparison, &choices).map_err(|found| faults.extend(found)).ok()
         }
         _ => None,
     };
-    let (Some(comparison), Some(mut rows), true) = (comparison, rows, faults.is_empty()) else {
-        return Err(faults);
+    let transfer = match (comparison, rows) {
+        (Some(comparison), Some(rows)) if faults.is_empty() => Some(result(comparison, rows, &choices)),
+        _ => None,
     };
-    let k = rows.iter().map(|row| row.student_factor).fold(1.0, f64::max);
+    Steps { reading, understood, faults, transfer }
+}
+
+fn result(comparison: Comparison, mut rows: Vec<TransferRow>, choices: &TransferChoices) -> Transfer {
+    let k = one_k(&rows);
     for row in &mut rows {
         row.expanded_percent = k * row.standard_percent;
     }
@@ -129,9 +163,11 @@ pub fn transfer_calibration(text: &str, bench: &Bench, choices: &Tree) -> Result
         scale: None,
         points: points.collect(),
     };
-    let history = export::history(&choices, &rows);
+    let history = export::history(choices, &rows);
     let csv = export::csv(&certificate, &rows, &history, comparison.reading.decimal_mark);
     let mut transfer = Transfer {
+        reference: comparison.reference,
+        test: comparison.test,
         reading: comparison.reading,
         rows,
         certificate,
@@ -140,8 +176,13 @@ pub fn transfer_calibration(text: &str, bench: &Bench, choices: &Tree) -> Result
         csv,
         shown: Shown::default(),
     };
-    transfer.shown = shown::shown(&transfer, &choices, comparison.has_times);
-    Ok(transfer)
+    transfer.shown = shown::shown(&transfer, choices, comparison.has_times);
+    transfer
+}
+
+/// One k for the table, the greatest.
+fn one_k(rows: &[TransferRow]) -> f64 {
+    rows.iter().map(|row| row.student_factor).fold(1.0, f64::max)
 }
 
 /// The reference as its certificate describes it; each point must state an uncertainty.
@@ -184,6 +225,8 @@ fn rows(
             Err(fault) => faults.push(fault),
         }
     }
+    let k = one_k(&rows);
+    faults.extend(rows.iter().filter_map(|row| unstatable(row, k)));
     if faults.is_empty() { Ok(rows) } else { Err(faults) }
 }
 
@@ -249,6 +292,31 @@ fn row(
         student_factor: coverage_factor(choices.coverage_probability, whole.degrees_of_freedom.max(1.0)),
         expanded_percent: 0.0,
     })
+}
+
+/// What no certificate can state, for its k and its U have limits.
+fn unstatable(row: &TransferRow, k: f64) -> Option<Fault> {
+    let most_k =
+        field("/meter/certificate/coverage_factor").map_or(f64::INFINITY, |field| field.limits.greatest());
+    let (nm, blocks) = (row.wavelength_nm, row.ratios.len());
+    let sentence = if row.student_factor > most_k {
+        let nu = row.effective_degrees_of_freedom.unwrap_or(f64::INFINITY);
+        format!(
+            "The coverage factor of a certificate must not exceed {most_k}; at {nm} nm {blocks} blocks leave {} effective \
+             degrees of freedom, for which it would be {}. Take more blocks.",
+            brief(nu, 3),
+            brief(row.student_factor, 3)
+        )
+    } else if k * row.standard_percent > 100.0 {
+        format!(
+            "The expanded uncertainty must not exceed 100 %; at {nm} nm it would be {} %. Take more blocks, and look \
+             whether source and connectors are steady.",
+            brief(k * row.standard_percent, 3)
+        )
+    } else {
+        return None;
+    };
+    Some(Fault::new("", Code::Range, Tree::Number(nm), &sentence))
 }
 
 fn ratio(block: &ReadBlock) -> Option<Block> {

@@ -119,8 +119,9 @@ fn doubts(transfer: &Transfer, choices: &TransferChoices, has_times: bool) -> Ve
     }
     let left_out = transfer.reading.bad_rows.len();
     if left_out > 0 {
+        let (rows, were) = if left_out == 1 { ("row belongs", "was") } else { ("rows belong", "were") };
         doubts.push(format!(
-            "{left_out} rows belong to no block and were left out. Look at them before you rely on the rest."
+            "{left_out} {rows} to no block and {were} left out. Look at what was left out before you rely on the rest."
         ));
     }
     if choices.contributions.is_empty() {

@@ -94,8 +94,11 @@ const ISSUERS: &[(&str, &str)] = &[
 
 impl Administration {
     /// Reads what a person gave; all faults at once.
-    pub(super) fn from_tree(tree: &Tree, has_uncertainties: bool) -> Result<Administration, Faults> {
-        let mut reader = Reader::strict();
+    pub(super) fn read(
+        tree: &Tree,
+        has_uncertainties: bool,
+        mut reader: Reader,
+    ) -> Result<Administration, Faults> {
         let nothing = Tree::Map(Vec::new());
         let tree = if tree.is_null() { &nothing } else { tree };
         let map = reader.part(Some(tree), AT, KEYS).unwrap_or(&Tree::Null);
@@ -227,7 +230,11 @@ impl Given<'_> {
     fn probability(&mut self, map: &Tree, needed: bool) -> Option<f64> {
         let at = format!("{AT}/coverage_probability");
         let given = map.get("coverage_probability");
-        if needed && given.is_none_or(Tree::is_null) {
+        let is_blank = given.is_none_or(|given| match given {
+            Tree::Text(text) => self.reader.mark().is_some() && text.trim().is_empty(),
+            other => other.is_null(),
+        });
+        if needed && is_blank {
             self.reader.missing(
                 &at,
                 "Needed beside uncertainties: the coverage probability, such as 0.9545 for k = 2.",
@@ -235,7 +242,7 @@ impl Given<'_> {
         }
         let limits = Limits::inside(0.0, 1.0);
         let name = "the coverage probability";
-        self.reader.of_kind(given, &at, name, &kind::NUMBER, &limits).map(|number| number.value)
+        self.reader.of_kind(given, &at, name, &kind::FRACTION, &limits).map(|number| number.value)
     }
 
     fn temperature(&mut self, map: &Tree) -> Option<f64> {

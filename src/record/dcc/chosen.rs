@@ -37,6 +37,8 @@ pub(super) struct Chosen {
     expanded: Option<usize>,
     form: Option<Role>,
     pub(super) coverage_factor: Option<f64>,
+    /// Whether no uncertainty is to be taken, whatever the file states.
+    pub(super) no_uncertainty: bool,
 }
 
 impl Chosen {
@@ -44,6 +46,7 @@ impl Chosen {
         let mut reader = Reader::strict();
         let keys = ["wavelength", "value", "expanded", "form", "coverage_factor"];
         let map = reader.part(Some(choices), "/choices", &keys).unwrap_or(&Tree::Null);
+        let no_uncertainty = matches!(map.get("expanded"), Some(Tree::Text(text)) if text == "none");
         let last = quantities.len().saturating_sub(1) as f64;
         let mut index = |key: &str, name: &str, kinds: &[QuantityKind]| -> Option<usize> {
             let at = format!("/choices/{key}");
@@ -71,7 +74,7 @@ impl Chosen {
         let (wavelength, value, expanded) = (
             index("wavelength", "the wavelength", &[QuantityKind::Length]),
             index("value", "the value", &values),
-            index("expanded", "the uncertainty", &values),
+            if no_uncertainty { None } else { index("expanded", "the uncertainty", &values) },
         );
         let form = map.get("form").filter(|form| !form.is_null());
         let form = form.and_then(|form| reader.word(Some(form), "/choices/form", FORMS));
@@ -87,7 +90,8 @@ impl Chosen {
                 "Values in A/W are a responsivity, and a responsivity is in A/W; the chosen form is another.";
             reader.faults.push(Fault::new("/choices/form", Code::Conflict, form.name().into(), sentence));
         }
-        let chosen = Chosen { wavelength, value, expanded, form, coverage_factor: k.map(|k| k.value) };
+        let chosen =
+            Chosen { wavelength, value, expanded, form, coverage_factor: k.map(|k| k.value), no_uncertainty };
         if reader.faults.is_empty() { Ok(chosen) } else { Err(reader.faults) }
     }
 
@@ -134,7 +138,7 @@ impl Chosen {
         let expanded = self.expanded.or_else(|| {
             // An uncertainty that stands with the values goes before one of its own.
             let own = |quantity: &&DccQuantity| role(quantity) == Some(Role::Expanded);
-            stated.filter(|stated| !stated.has_uncertainty)?;
+            stated.filter(|stated| !stated.has_uncertainty && !self.no_uncertainty)?;
             quantities.iter().filter(as_many).find(own).map(|quantity| quantity.index)
         });
         let guessed = self.wavelength.is_none() || self.value.is_none() || self.form.is_none();

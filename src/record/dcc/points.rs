@@ -1,6 +1,6 @@
 //! From the quantities of a digital certificate to the certificate of a meter.
 
-use super::chosen::named;
+use super::chosen::{Chosen, named};
 use super::quantity::DccQuantity;
 use super::series::Written;
 use super::unit::{Dimension, decimal, understood};
@@ -38,7 +38,7 @@ pub(super) fn certificate(
     quantities: &[DccQuantity],
     [wavelengths, values, expanded]: [Option<usize>; 3],
     form: Role,
-    chosen_k: Option<f64>,
+    chosen: &Chosen,
     notes: &mut Vec<String>,
 ) -> Result<DccCertificate, Faults> {
     let of = |index: Option<usize>| index.and_then(|index| quantities.get(index));
@@ -65,7 +65,7 @@ pub(super) fn certificate(
     let (mut points, mut bad_points) = (Vec::new(), Vec::new());
     for (at, (wavelength, value)) in wavelengths.values.iter().zip(&values.values).enumerate() {
         let own = expanded.and_then(|expanded| expanded.values.get(at));
-        match point(wavelength, value, own, form, chosen_k) {
+        match point(wavelength, value, own, form, chosen) {
             Ok(point) => points.push(point),
             Err(sentence) => bad_points.push(BadPoint { number: at + 1, sentence }),
         }
@@ -133,7 +133,7 @@ fn point(
     value: &Written,
     expanded: Option<&Written>,
     form: Role,
-    chosen_k: Option<f64>,
+    chosen: &Chosen,
 ) -> Result<(CertificatePoint, Option<f64>), String> {
     let number = |written: &str, unit: &str, name: &str| -> Result<f64, String> {
         let (_, shift) =
@@ -154,6 +154,7 @@ fn point(
         return Err(format!("The value must be above 0 and below 1000; it is {stated}."));
     }
     let (percent, k) = match (&value.uncertainty, expanded) {
+        _ if chosen.no_uncertainty => (None, None),
         (_, Some(own)) => {
             let u = number(&own.number, &own.unit, "uncertainty")?;
             // In per cent, or as a ratio beside a responsivity, it is relative; otherwise it is in the value's unit.
@@ -166,14 +167,14 @@ fn point(
                     own.unit, value.unit
                 ));
             }
-            (Some(if relative { u * 100.0 } else { u / base * 100.0 }), chosen_k)
+            (Some(if relative { u * 100.0 } else { u / base * 100.0 }), chosen.coverage_factor)
         }
         (Some(attached), None) => {
             let percent = match &attached.relative_unit {
                 Some(unit) => number(&attached.number, unit, "uncertainty")? * 100.0,
                 None => number(&attached.number, &value.unit, "uncertainty")? / base * 100.0,
             };
-            let k = if attached.standard { Some(1.0) } else { chosen_k.or(attached.k) };
+            let k = if attached.standard { Some(1.0) } else { chosen.coverage_factor.or(attached.k) };
             (Some(percent), k)
         }
         (None, None) => (None, None),

@@ -39,7 +39,7 @@ pub struct DccReading {
 /// certificate of a meter, and makes it.
 ///
 /// `choices` overrule the guess: `{ wavelength, value, expanded, form, coverage_factor }`, the first three being
-/// indices of quantities. Units that are no wavelength, responsivity or ratio are listed, and refused by name where they
+/// indices of quantities; `expanded` may also be `"none"`, so that no uncertainty is taken. Units that are no wavelength, responsivity or ratio are listed, and refused by name where they
 /// are chosen.
 ///
 /// ```text
@@ -81,7 +81,7 @@ pub fn read_dcc(text_of_file: &str, choices: &Tree) -> Result<DccReading, Faults
     let certificate = match (taken.wavelength, taken.value, taken.form) {
         (Some(wavelength), Some(value), Some(form)) => {
             let columns = [Some(wavelength), Some(value), taken.expanded];
-            Some(certificate(&quantities, columns, form, chosen.coverage_factor, &mut notes)?)
+            Some(certificate(&quantities, columns, form, &chosen, &mut notes)?)
         }
         _ => {
             notes.push(

@@ -3,6 +3,7 @@
 use super::administration::{Administration, Contact};
 use super::xml::{DCC, SI, Writer};
 use crate::bench::meter::{Certificate, CertificateForm, CertificatePoint};
+use crate::bench::reader::Reader;
 use crate::fault::{Fault, Faults};
 use crate::tree::Tree;
 
@@ -66,8 +67,8 @@ const TERMS: [Terms; 4] = [
 ];
 
 /// Writes a certificate with what a person said beside it. Nothing is made up: what the schema demands and is not given
-/// is a fault under `/administration`.
-pub fn write_dcc(certificate: &Certificate, administration: &Tree) -> Result<String, Faults> {
+/// is a fault under `/administration`. `reader` says whether its numbers may be typed texts.
+pub fn write_dcc(certificate: &Certificate, administration: &Tree, reader: Reader) -> Result<String, Faults> {
     let mut faults = Faults::new();
     let with = certificate.points.iter().filter(|point| point.expanded_percent.is_some()).count();
     if with > 0 && with < certificate.points.len() {
@@ -79,7 +80,7 @@ pub fn write_dcc(certificate: &Certificate, administration: &Tree) -> Result<Str
         faults.push(Fault::missing("/meter/certificate/coverage_factor", sentence));
     }
     let given =
-        Administration::from_tree(administration, with > 0).map_err(|found| faults.extend(found)).ok();
+        Administration::read(administration, with > 0, reader).map_err(|found| faults.extend(found)).ok();
     let (Some(given), true) = (given, faults.is_empty()) else {
         return Err(faults);
     };
