@@ -8,10 +8,13 @@ use crate::fault::Faults;
 pub struct Prepared {
     /// What the meter's certificate says of its own uncertainty, for a number that rests on it.
     pub certificate: Option<CertificateDoubt>,
-    /// The number; nothing where this bench has none. The second value is by which share each point of the certificate
-    /// is truly larger than certified.
-    pub value: Box<dyn Fn(&Bench, &[f64]) -> Option<f64>>,
+    /// The number.
+    pub value: NumberOf,
 }
+
+/// A number of an answer by the bench, and by the share by which each point of the certificate is truly larger than
+/// certified; nothing where this bench has no such number.
+pub type NumberOf = Box<dyn Fn(&Bench, &[f64]) -> Option<f64>>;
 
 /// The uncertainty that a certificate states.
 #[derive(Debug, Clone, PartialEq)]

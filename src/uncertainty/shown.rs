@@ -197,16 +197,7 @@ fn bars(uncertain: &Uncertain) -> Budget {
 }
 
 fn table(uncertain: &Uncertain) -> Table {
-    let columns = [
-        "In doubt",
-        "Estimate",
-        "u",
-        "Distribution",
-        "ν",
-        "Sensitivity c",
-        "|c·u|",
-        "Share / %",
-    ];
+    let columns = ["In doubt", "Estimate", "u", "Distribution", "ν", "Sensitivity c", "|c·u|", "Share / %"];
     let row = |row: &Contribution| {
         let own = if row.estimate.is_none() && row.unit.is_empty() {
             format!("{} %", significant(row.standard * 100.0, 2))

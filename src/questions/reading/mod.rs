@@ -235,9 +235,8 @@ fn ratio(bench: &Bench, given: &Given, power_w: f64) -> Result<Option<f64>, Faul
         Fault { pointer: pointer.to_owned(), ..fault }
     });
     let found = needs.found(found);
-    needs
-        .all(Some(()))
-        .and_then(|()| Ok(other_w.zip(found).map(|(other_w, found)| power_w / (other_w * found.factor))))
+    let () = needs.all(Some(()))?;
+    Ok(other_w.zip(found).map(|(other_w, found)| power_w / (other_w * found.factor)))
 }
 
 fn averaging_percent(given: &Given, factor: f64) -> Option<f64> {

@@ -8,7 +8,7 @@ use crate::bench::meter::CertificateForm;
 use crate::fault::Faults;
 use crate::physics::decibel::{db_from_ratio, dbm_from_watt, watt_from_dbm};
 use crate::physics::spectrum::Spectrum;
-use crate::questions::prepared::{CertificateDoubt, Prepared};
+use crate::questions::prepared::{CertificateDoubt, NumberOf, Prepared};
 use crate::questions::spectral::Spectral;
 
 /// What of the light may lie outside of the certificate in a trial without mattering.
@@ -22,7 +22,7 @@ pub fn prepare(bench: &Bench, of: &'static str) -> Result<Prepared, Faults> {
     let given = given(bench)?;
     let model = Model::new(&given, bench);
     let certificate = doubt(&given, bench);
-    let value: Box<dyn Fn(&Bench, &[f64]) -> Option<f64>> = match of {
+    let value: NumberOf = match of {
         "power_w" => Box::new(move |bench, shares| model.power_w(bench, shares)),
         "power_dbm" => Box::new(move |bench, shares| Some(dbm_from_watt(model.power_w(bench, shares)?))),
         "ratio" => Box::new(move |bench, shares| model.ratio(bench, shares)),
@@ -204,9 +204,8 @@ fn doubt(given: &Given, bench: &Bench) -> Option<CertificateDoubt> {
         for (index, weight) in certified.values.weights(place).unwrap_or_default() {
             needed[index] |= weight != 0.0;
             // The wavelength itself may be in doubt: neighbours come within reach.
-            for near in index.saturating_sub(2)..(index + 3).min(points.len()) {
-                has_say[near] = true;
-            }
+            let near = has_say.iter_mut().take(index + 3).skip(index.saturating_sub(2));
+            near.for_each(|near| *near = true);
         }
     }
     let states = |index: usize| points[index].expanded_percent.map(|percent| percent / 100.0 / k);

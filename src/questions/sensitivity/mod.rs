@@ -5,7 +5,7 @@ mod setup;
 mod shown;
 
 use super::curve::Curve;
-use super::prepared::Prepared;
+use super::prepared::{NumberOf, Prepared};
 use super::shown::Shown;
 use crate::bench::Bench;
 use crate::bench::decision::Threshold as Rule;
@@ -138,7 +138,7 @@ pub fn prepare(bench: &Bench, of: &'static str) -> Result<Prepared, Faults> {
         let setup = Setup::new(bench).ok()?;
         least_average_power_w(&setup.link(), setup.target).ok()
     };
-    let value: Box<dyn Fn(&Bench, &[f64]) -> Option<f64>> = match of {
+    let value: NumberOf = match of {
         "average_power_w" => Box::new(move |bench, _| power_w(bench)),
         "average_power_dbm" => Box::new(move |bench, _| power_w(bench).map(dbm_from_watt)),
         _ => return Ok(Prepared::by_numbers(numbers, of)),
