@@ -236,12 +236,16 @@ for (const engine of ENGINES) {
             await press("Keep this answer");
             await person.until("it is kept", () => document.querySelectorAll(".kept li").length === 1);
             await ask("reading");
-            await person.fill("/source/wavelength_nm", "1550 nm");
-            await person.fill("/meter/set_wavelength_nm", "1550 nm");
+            // Between its wavelengths a correction factor needs the meter's typical curve.
+            const curve = door.demo().meter.certificate.points.map(({ wavelength_nm, value }) => ({ wavelength_nm, a_per_w: value }));
+            await paste("/meter/typical_curve/points", `Wavelength (nm)\tR (A/W)\n${curve.map(({ wavelength_nm, a_per_w }) => `${wavelength_nm}\t${a_per_w}`).join("\n")}\n`);
+            await person.fill("/source/wavelength_nm", "1400 nm");
+            await person.fill("/meter/set_wavelength_nm", "1310 nm");
             await answered();
             const bench = door.demo();
-            bench.source.wavelength_nm = 1550;
-            bench.meter.set_wavelength_nm = 1550;
+            bench.source.wavelength_nm = 1400;
+            bench.meter.set_wavelength_nm = 1310;
+            bench.meter.typical_curve = curve;
             bench.meter.certificate = { form: "correction_factor", coverage_factor: person.transfer.certificate.coverage_factor, points: person.transfer.certificate.points };
             await headlineBecomes(figure("reading", bench));
             await press("Reopen");
