@@ -152,19 +152,17 @@ impl Pchip {
     #[inline]
     pub fn value_with(&self, x: f64, y: impl Fn(usize) -> f64) -> Option<f64> {
         let (index, [left, right]) = self.interval(x)?;
-        let gap = |before: usize| {
-            let (from, to) = (self.nodes.get(before)?, self.nodes.get(before + 1)?);
-            let width = to.x - from.x;
-            Some(Gap { width, slope: (y(before + 1) - y(before)) / width })
-        };
-        let slope = |at: usize| match (at.checked_sub(1).and_then(gap), gap(at)) {
-            (Some(before), Some(after)) => inner_slope(before, after).0,
-            (None, Some(first)) => end_slope(first, gap(1)).0,
-            (Some(last), None) => end_slope(last, at.checked_sub(2).and_then(gap)).0,
-            (None, None) => 0.0,
-        };
+        let (y_left, y_right) = (y(index), y(index + 1));
+        let gap =
+            |from: &Node, to: &Node, rise: f64| Gap { width: to.x - from.x, slope: rise / (to.x - from.x) };
+        let here = gap(left, right, y_right - y_left);
+        let before = index.checked_sub(1).and_then(|i| Some(gap(self.nodes.get(i)?, left, y_left - y(i))));
+        let after = self.nodes.get(index + 2).map(|next| gap(right, next, y(index + 2) - y_right));
+        let slope_left =
+            before.map_or_else(|| end_slope(here, after).0, |before| inner_slope(before, here).0);
+        let slope_right = after.map_or_else(|| end_slope(here, before).0, |after| inner_slope(here, after).0);
         let [h00, h10, h01, h11] = hermite(left, right, x);
-        Some(h00 * y(index) + h10 * slope(index) + h01 * y(index + 1) + h11 * slope(index + 1))
+        Some(h00 * y_left + h10 * slope_left + h01 * y_right + h11 * slope_right)
     }
 
     /// Every x of the table: where the cubic pieces meet.
@@ -232,6 +230,7 @@ fn slope_at(index: usize, gaps: &[Gap]) -> (f64, Vec<(usize, f64)>) {
 }
 
 /// The weighted harmonic mean of the slopes on both sides, and its derivative by each.
+#[inline]
 fn inner_slope(before: Gap, after: Gap) -> (f64, f64, f64) {
     let (d1, d2) = (before.slope, after.slope);
     if d1 == 0.0 || d2 == 0.0 || (d1 > 0.0) != (d2 > 0.0) {

@@ -118,25 +118,24 @@ impl<'m> Trials<'m> {
     }
 
     fn trial(&mut self) {
-        for index in 0..self.draws.len() {
-            let draw = self.draws[index];
+        let Trials { draws, deviations, normals, correlations, random, .. } = self;
+        for (index, (draw, deviation)) in draws.iter().zip(deviations.iter_mut()).enumerate() {
             let unit = match (draw.correlated, draw.degrees_of_freedom) {
-                (false, None) => draw.shape.deviate(uniform(&mut self.random)),
-                (false, Some(nu)) => {
-                    standard_normal(uniform(&mut self.random)) / root_mean_square(nu, &mut self.random)
-                }
+                (false, None) => draw.shape.deviate(uniform(random)),
+                (false, Some(nu)) => standard_normal(uniform(random)) / root_mean_square(nu, random),
                 (true, freedom) => {
-                    self.normals[index] = standard_normal(uniform(&mut self.random));
-                    let row = self.correlations.root_row(index);
-                    let normal: f64 = row.iter().zip(&self.normals).map(|(root, normal)| root * normal).sum();
+                    normals[index] = standard_normal(uniform(random));
+                    let row = correlations.root_row(index);
+                    let normal: f64 =
+                        row.iter().zip(normals.iter()).map(|(root, normal)| root * normal).sum();
                     match (draw.shape, freedom) {
                         (Shape::Normal, None) => normal,
-                        (Shape::Normal, Some(nu)) => normal / root_mean_square(nu, &mut self.random),
+                        (Shape::Normal, Some(nu)) => normal / root_mean_square(nu, random),
                         (shape, _) => shape.deviate(upper_tail(-normal).clamp(1e-300, 1.0 - 1e-16)),
                     }
                 }
             };
-            self.deviations[index] = draw.standard * unit;
+            *deviation = draw.standard * unit;
         }
         match (self.model)(&self.deviations) {
             Some(value) if value.is_finite() => self.values.push(value),

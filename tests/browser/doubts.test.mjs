@@ -93,7 +93,7 @@ for (const engine of ENGINES) {
                 select.dispatchEvent(new Event("change", { bubbles: true }));
             }, `usual:${usual.findIndex(({ name, question }) => name === "repeated readings" && question === "reading")}`);
             const typed = ["-30.51", "-30.53", "-30.52", "-30.54"];
-            await into('[data-key="12-readings"]', typed.join("\n"));
+            await into('[data-key="12-readings"]', typed.join("; "));
             const bench = door.demo();
             bench.uncertainty.inputs.push({ pointer: "/meter/reading_dbm", readings: typed.map(Number) });
             await becomes(uncertainty("reading", bench));

@@ -49,7 +49,7 @@ describe("a typed bench", () => {
     });
 
     test("is filled from a bench and gives the bench back", () => {
-        const write = { number: (_, value) => String(value), table: () => "" };
+        const write = { number: (_, value) => String(value), table: () => "", doubts: () => null };
         const texts = textsOf(controls, { path: { loss_db: 3.5 }, detector: { responsivity: { kind: "value", a_per_w: 0.9 } } }, write, {});
         assert.equal(texts["/path/loss_db"], "3.5");
         assert.equal(typed(controls, texts).detector.responsivity.a_per_w, "0.9");
