@@ -219,6 +219,7 @@ fn sit(
     let junction_v = biased.junction.junction_v(best.gain);
     let bias_v = biased.bias_v(best.gain, currents);
     match junction_v.zip(bias_v) {
+        Some((_, bias_v)) if bias_v <= 0.0 => Err(none(shown::no_junction(setup))),
         Some((junction_v, bias_v)) => {
             Ok(Sits { bias_v, at: Operation { gain: best.gain, junction_v }, power_w: best.power_w })
         }
@@ -235,7 +236,7 @@ fn sit_down(setup: &Setup, biased: &Biased, currents: &Currents, sits: &Sits, an
         let gain = biased?.operation(bias_v, currents).ok()?.gain;
         Some(db_from_ratio(power_at(setup, gain)? / power_w))
     };
-    let volts = |by: f64| lost_db(Some(biased.clone()), bias_v + by).filter(|_| bias_v + by > 0.0);
+    let volts = |by: f64| lost_db(Some(biased.clone()), bias_v + by);
     let kelvin = |by: f64| lost_db(setup.biased(setup.temperature_c.map(|now| now + by)), bias_v);
     let dark = Currents { beside_a: currents.beside_a, ..setup.currents(0.0) };
     let in_the_dark = biased.operation(bias_v, &dark).ok().map(|at| at.gain);

@@ -35,9 +35,8 @@ pub fn gain_does_not_pay(best: &Best) -> String {
 /// Why there is no junction at the temperature now.
 pub fn no_junction(setup: &Setup) -> String {
     let now = setup.temperature_c.map_or(String::new(), |now| format!(" at {} °C", brief(now, 4)));
-    format!(
-        "the breakdown voltage would fall to 0{now}. Check the temperature coefficient and the temperatures it spans"
-    )
+    let what = if setup.is_measured() { "the voltages of the table" } else { "the breakdown voltage" };
+    format!("{what} would fall to 0{now}. Check the temperature coefficient and the temperatures it spans")
 }
 
 /// Why the table gives no voltage for a gain.
@@ -119,9 +118,7 @@ fn facts(setup: &Setup, answer: &Answer) -> Vec<Fact> {
     }));
     facts.extend(answer.set.iter().flat_map(set_facts));
     facts.extend(answer.breakdown_v.map(|volts| Fact::fixed("Breakdown voltage now", volts, 2, "V")));
-    facts.extend(
-        answer.margin_v.map(|volts| Fact::fixed("Margin to breakdown", volts, 2, "V").noted("below it")),
-    );
+    facts.extend(answer.margin_v.map(|volts| Fact::fixed("Margin to breakdown", volts, 2, "V")));
     facts.extend(slopes(answer));
     facts.extend(
         answer.loss_per_volt.and_then(|loss| lost("Sensitivity lost per volt of error", "1 V", &loss)),
