@@ -30,7 +30,7 @@ fn asked(set: &[(&str, Value)]) -> Value {
 
 fn reason(set: &[(&str, Value)]) -> String {
     let answer = asked(set);
-    assert_eq!(answer["shown"]["headline"]["figure"], "No such bias");
+    assert_eq!(answer["shown"]["headline"]["figure"], "No such bias", "{set:?}");
     assert!(answer["bias_v"].is_null() && answer["table"].as_array().is_some_and(Vec::is_empty));
     answer["none_because"]["reason"].as_str().expect("a reason").to_owned()
 }
@@ -39,16 +39,24 @@ fn reason(set: &[(&str, Value)]) -> String {
 fn no_such_bias_is_an_answer_with_its_reason() {
     let table = |points: Value| ("/detector/avalanche/bias", json!({ "kind": "table", "points": points }));
     for (set, says) in [
-        (vec![("/detector/avalanche/ionisation_ratio", json!(0))], "more gain always helps"),
-        (vec![("/amplifier/noise/current_a", json!(0))], "any gain harms"),
-        (vec![("/source/rin_db_per_hz", json!(-100))], "intensity noise grows with the light"),
+        // In the closed form's own limit, where it has no end either.
         (
             vec![
-                ("/detector/bandwidth_hz", json!(2e9)),
-                ("/detector/avalanche/gain_bandwidth_hz", json!(2e9)),
+                ("/detector/avalanche/ionisation_ratio", json!(0)),
+                ("/detector/dark_current_bulk_a", Value::Null),
+                ("/detector/dark_current_surface_a", Value::Null),
+                ("/source/extinction_ratio_db", Value::Null),
+                ("/source/rin_db_per_hz", Value::Null),
+                ("/decision/threshold", json!("q")),
             ],
-            "slower than the receiver",
+            "more gain always helps",
         ),
+        (
+            vec![("/amplifier/noise/current_a", json!(0)), ("/detector/dark_current_surface_a", Value::Null)],
+            "any gain harms",
+        ),
+        (vec![("/source/rin_db_per_hz", json!(-100))], "intensity noise grows with the light"),
+        (vec![("/detector/avalanche/gain_bandwidth_hz", json!(1e9))], "any gain makes the detector too slow"),
         (
             vec![
                 ("/detector/avalanche/bias/breakdown_v_per_k", json!(9)),
@@ -69,7 +77,7 @@ fn no_such_bias_is_an_answer_with_its_reason() {
 #[test]
 fn what_is_doubtful_is_said() {
     let doubts = |set: &[(&str, Value)]| asked(set)["shown"]["doubts"].to_string();
-    let quiet = ("/amplifier/noise/current_a", json!(1.2e-8));
+    let quiet = ("/amplifier/noise/current_a", json!(4e-9));
     assert!(doubts(&[quiet]).contains("a PIN photodiode would do all but as well"));
     let resistance = ("/detector/avalanche/bias/series_resistance_ohm", json!(2e6));
     assert!(doubts(std::slice::from_ref(&resistance)).contains("above breakdown: only the drop"));
@@ -77,9 +85,8 @@ fn what_is_doubtful_is_said() {
     let answer = asked(std::slice::from_ref(&most));
     assert_eq!(answer["current_limit_a"], 1e-6, "never above what the detector bears");
     assert!(answer["shown"]["doubts"].to_string().contains("above the 1.00 µA that the detector bears"));
-    let slow =
-        [("/detector/bandwidth_hz", json!(1e9)), ("/detector/avalanche/gain_bandwidth_hz", json!(5e10))];
-    assert!(doubts(&slow).contains("Even at gain 1 the detector passes 1.00 GHz"));
+    let slow = ("/detector/bandwidth_hz", json!(1e9));
+    assert!(doubts(std::slice::from_ref(&slow)).contains("At the best gain the detector passes 1.00 GHz"));
     let coefficient = ("/detector/avalanche/bias/breakdown_v_per_k", Value::Null);
     assert!(doubts(std::slice::from_ref(&coefficient)).contains("Without a temperature coefficient"));
     // 60 V less 0.2 V for 2 K below the reference, by hand.
@@ -87,23 +94,36 @@ fn what_is_doubtful_is_said() {
 }
 
 #[test]
-fn the_detectors_speed_limits_the_gain() {
-    // B(10) = 6.24695047554 GHz for 10 GHz and a product of 80 GHz: formula of avalanche::bandwidth_hz, in 25 digits by mpmath.
+fn speed_and_what_is_known_of_the_noise_limit_the_gain() {
     let answer = asked(&[
-        ("/detector/bandwidth_hz", json!(1e10)),
         ("/detector/avalanche/gain_bandwidth_hz", json!(8e10)),
-        ("/amplifier/bandwidth_hz", json!(6.24695047554e9)),
+        ("/amplifier/bandwidth_hz", json!(6.4e9)),
         ("/amplifier/noise/current_a", json!(3e-6)),
     ]);
-    assert_eq!(answer["best_gain_limit"], "bandwidth");
-    let best = answer["best_gain"].as_f64().unwrap_or(f64::NAN);
-    // Twelve figures of the bandwidth.
-    assert!((best - 10.0).abs() < 1e-10, "{best}");
+    assert_eq!(answer["best_gain_limit"], "gain_bandwidth");
+    assert_eq!(answer["best_gain"], 12.5, "80 GHz over 6.4 GHz");
     assert_eq!(asked(&[])["best_gain_limit"], "noise");
     let table =
         json!({ "kind": "table", "points": [{ "gain": 3, "factor": 2 }, { "gain": 6, "factor": 3.2 }] });
     let answer = asked(&[("/detector/avalanche/excess_noise", table)]);
     assert_eq!((&answer["best_gain_limit"], &answer["best_gain"]), (&json!("noise_table"), &json!(6.0)));
+}
+
+#[test]
+fn the_valley_is_told_by_the_lowest_gain_that_is_all_but_as_good() {
+    let answer = asked(&[]);
+    let near = answer["near_gain"].as_f64().expect("a gain");
+    let best = answer["best_gain"].as_f64().expect("a gain");
+    assert!(1.0 < near && near < best, "{near} below {best}");
+    let mut there = bench(&[("/detector/avalanche/gain", json!(near))]);
+    there["detector"]["avalanche"]["bias"] = Value::Null;
+    let tree = Tree::from_json(&there.to_string()).expect("JSON");
+    let there =
+        serde_json::to_value(door::ask("sensitivity", &tree, &Tree::Null).expect("an answer")).expect("JSON");
+    let lost = there["average_power_dbm"].as_f64().expect("a power")
+        - answer["average_power_dbm"].as_f64().expect("a power");
+    assert!((lost - 0.1).abs() < 1e-9, "{lost} dB");
+    assert!(answer["near_bias_v"].as_f64() < answer["bias_v"].as_f64());
 }
 
 #[test]

@@ -246,7 +246,7 @@ fn any_bench() -> impl Strategy<Value = Value> {
 }
 
 proptest! {
-    #![proptest_config(fixed_seed(250))]
+    #![proptest_config(fixed_seed(120))]
 
     #[test]
     fn every_bench_has_a_bias_or_a_reason_in_finite_numbers(bench in any_bench()) {
@@ -260,7 +260,7 @@ proptest! {
         let answer = asked("avalanche_bias", &bench)?;
         if let (Some(best), Some(least_dbm)) = (answer["best_gain"].as_f64(), answer["average_power_dbm"].as_f64()) {
             let reach = if bench["detector"]["avalanche"]["excess_noise"]["kind"] == "table" { 20.0 } else { 1e4 };
-            let limit = if answer["best_gain_limit"] == "bandwidth" { best } else { reach };
+            let limit = if answer["best_gain_limit"] == "gain_bandwidth" { best } else { reach };
             let mut other = bench.clone();
             other["detector"]["avalanche"]["gain"] = json!(f64::powf(limit, part).clamp(1.0, limit));
             let there = asked("sensitivity", &other)?;

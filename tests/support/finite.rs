@@ -33,6 +33,8 @@ const MAY_BE_ABSENT: &[&str] = &[
     "power_dbm",
     "expanded_percent",
     "bias_v",
+    "near_gain",
+    "near_bias_v",
     "best_gain_limit",
     "unit_gain_power_dbm",
     "light_w",
