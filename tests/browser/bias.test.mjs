@@ -33,6 +33,13 @@ for (const engine of ENGINES) {
             person.until(`the headline is ${wanted}`, (text) => document.querySelector(".headline-figure")?.innerText === text, wanted);
         const boxIsOpen = () => person.run((group) => document.querySelector(`details[data-group="${group}"]`).open, BIAS);
         const ask = (question) => person.run((name) => document.querySelector(`input[name="question"][value="${name}"]`).click(), question);
+        const pick = async (name, value) => {
+            const field = await person.field(name);
+            await person.run((select, wanted) => {
+                select.value = wanted;
+                select.dispatchEvent(new Event("input", { bubbles: true }));
+            }, field, value);
+        };
         const press = (text) => person.run((wanted) => [...document.querySelectorAll("button")].find((one) => one.innerText === wanted && !one.closest("[hidden]")).click(), text);
 
         test("opens the question, and the inputs that belong to it", async () => {
@@ -77,7 +84,7 @@ for (const engine of ENGINES) {
         });
 
         test("pastes measured gains, and sees how they were read", async () => {
-            await person.choose(`${BIAS}/kind`, "table");
+            await pick(`${BIAS}/kind`, "table");
             await person.giveFile("#detector-avalanche-bias-points-file", "gains.csv", GAINS);
             const read = await person.until("it says how it was read", (name) => {
                 const box = document.querySelector(`[data-table="${name}"] .read-as`);
@@ -94,7 +101,7 @@ for (const engine of ENGINES) {
         });
 
         test("describes the excess noise by an exponent", async () => {
-            await person.choose("/detector/avalanche/excess_noise/kind", "power");
+            await pick("/detector/avalanche/excess_noise/kind", "power");
             await person.until("the answer waits", () => document.querySelector("#answer.stale"));
             assert.match(await person.read("#state-line"), /Detector: exponent of the gain/);
             await person.fill("/detector/avalanche/excess_noise/exponent", "0.7");
@@ -111,10 +118,10 @@ for (const engine of ENGINES) {
         });
 
         test("takes a PIN and is told that it has no gain to set", async () => {
-            await person.choose("detector-type", "pin");
+            await pick("detector-type", "pin");
             await person.until("the answer waits", () => document.querySelector("#answer.stale"));
             assert.match(await person.read("#part-detector-fault"), /A bias needs an avalanche detector/);
-            await person.choose("detector-type", "avalanche");
+            await pick("detector-type", "avalanche");
             await headlineBecomes(shown(bench).headline.figure);
         });
 
