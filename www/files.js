@@ -87,7 +87,7 @@ export function csvOf({ columns, rows }, mark) {
   const part = mark === "comma" ? ";" : ",";
   // A spreadsheet takes the true minus sign for a letter, and a dash for a value.
   const plain = (/** @type {string} */ cell) => (cell === "–" ? "" : marked(cell, mark).replaceAll("−", "-"));
-  const quoted = (/** @type {string} */ cell) => (/[",;\r\n]/.test(cell) ? `"${cell.replaceAll('"', '""')}"` : cell);
+  const quoted = (/** @type {string} */ cell) => (cell.includes(part) || /["\r\n]/.test(cell) ? `"${cell.replaceAll('"', '""')}"` : cell);
   const line = (/** @type {string[]} */ cells) => cells.map((cell) => quoted(plain(cell))).join(part);
   return `${[columns, ...rows].map(line).join("\r\n")}\r\n`;
 }
