@@ -73,12 +73,15 @@ build_core() {
 build_page() {
     say "the page"
     node_modules/.bin/tsc --project www/tsconfig.json
-    node_modules/.bin/esbuild www/main.js --bundle --minify --format=iife --target=es2022 --charset=utf8 \
-        --log-level=warning --outfile="$made/page.js"
+    local script
+    for script in main worker; do
+        node_modules/.bin/esbuild "www/$script.js" --bundle --minify --format=iife --target=es2022 --charset=utf8 \
+            --log-level=warning --outfile="$made/$script.js"
+    done
     node_modules/.bin/esbuild www/style.css --bundle --minify --charset=utf8 --loader:.svg=dataurl \
         --log-level=warning --outfile="$made/page.css"
     "$CARGO_TARGET_DIR/debug/pack" page www/index.html "$made/page.css" "$made/core/leastlight_bg.wasm" \
-        "$made/core/leastlight.js" "$made/page.js" "$made/leastlight.html"
+        "$made/core/leastlight.js" "$made/worker.js" "$made/main.js" "$made/leastlight.html"
     # Only a page that passes the gate reaches dist/.
     rm -f dist/leastlight.html
     node www/pack/gate.js "$made/leastlight.html" "$root" "$HOME" "${CARGO_HOME:-$HOME/.cargo}" "$(rustc --print sysroot)"

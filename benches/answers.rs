@@ -69,3 +69,27 @@ fn understanding_a_typed_bench(bencher: Bencher) {
     let bench = door::demo();
     bencher.bench(|| door::understand(black_box(&bench), "auto"));
 }
+
+/// Trials in a run, as in the page.
+const TRIALS: usize = 1_000_000;
+
+fn trials(bencher: Bencher, question: &str) {
+    let options = Tree::Map(vec![("trials".to_owned(), Tree::Bool(true))]);
+    bencher.bench(|| {
+        let mut run = door::Run::begin(question, black_box(&door::demo()), &options).ok()?;
+        run.advance(TRIALS);
+        Some(run.finish())
+    });
+}
+
+/// A million trials of the demonstration bench's reading, intervals and histogram included.
+#[divan::bench(sample_count = 10, sample_size = 1)]
+fn a_million_trials_of_the_reading(bencher: Bencher) {
+    trials(bencher, "reading");
+}
+
+/// A million trials of its sensitivity.
+#[divan::bench(sample_count = 1, sample_size = 1)]
+fn a_million_trials_of_the_sensitivity(bencher: Bencher) {
+    trials(bencher, "sensitivity");
+}

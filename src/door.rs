@@ -4,6 +4,7 @@
 use crate::bench::Bench;
 use crate::bench::field::{FieldRow, field, fields};
 use crate::bench::reader::Reader;
+use crate::bench::uncertainty::{MonteCarlo, Uncertainty};
 use crate::explore::solve::{Solution, solve};
 use crate::explore::sweep::{Sweep, sweep};
 use crate::fault::{Allowed, Code, Fault, Faults};
@@ -14,6 +15,9 @@ use crate::questions::{Answer, QUESTIONS, Question};
 use crate::record::{self, CertificateTable, Choices, DccReading, Reading, ResponsivityTable, SpectrumTable};
 use crate::tree::Tree;
 use crate::typed;
+use crate::uncertainty::asked::{self as uncertainty, Begun, Uncertain};
+use crate::uncertainty::shown::show;
+use crate::uncertainty::trials::Trials;
 use serde::Serialize;
 use std::collections::BTreeMap;
 
@@ -23,6 +27,9 @@ pub struct Asked {
     /// The answer itself.
     #[serde(flatten)]
     pub answer: Answer,
+    /// How well the answer's main number is known, where doubts are stated and it exists.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub uncertainty: Option<Uncertain>,
     /// The answer's numbers over a range of one number of the bench.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub sweep: Option<Sweep>,
@@ -57,25 +64,104 @@ pub fn field_rows() -> Vec<FieldRow> {
     fields().map(FieldRow::from).collect()
 }
 
-/// Asks a question of a bench.
+/// Asks a question of a bench. Doubts may stand among the options or, where those have none, on the bench itself. Trials
+/// are run to their end where the options hold them; those that a bench plans, only with `trials: true`, for they take
+/// a while.
 pub fn ask(question: &str, bench: &Tree, options: &Tree) -> Result<Asked, Faults> {
-    let question = find_question(question)?;
-    let mut faults = Faults::new();
-    let bench = Bench::from_tree(bench).map_err(|found| faults.extend(found)).ok();
-    let mut reader = Reader::strict();
-    let options = reader.part(Some(options), "/options", &["sweep", "solve"]);
-    faults.extend(reader.faults);
-    let (Some(bench), true) = (bench, faults.is_empty()) else {
-        return Err(faults);
-    };
-    let option = |key: &str| options.and_then(|options| options.get(key)).filter(|tree| !tree.is_null());
-    let answer = (question.ask)(&bench)?;
-    let swept = option("sweep").map(|given| sweep(&bench, question, given));
-    let solved = option("solve").map(|given| solve(&bench, question, given));
-    match (swept.transpose(), solved.transpose()) {
-        (Ok(sweep), Ok(solve)) => Ok(Asked { answer, sweep, solve }),
-        (swept, solved) => Err([swept.err(), solved.err()].into_iter().flatten().flatten().collect()),
+    let mut run = Run::begin(question, bench, options)?;
+    run.advance(usize::MAX);
+    Ok(run.finish())
+}
+
+/// A question that has been answered but for its trials, which may take a while and so go in slices.
+pub struct Run {
+    asked: Asked,
+    trials: Option<(Trials<'static>, u64)>,
+}
+
+impl Run {
+    /// Answers all but the trials.
+    pub fn begin(question: &str, bench: &Tree, options: &Tree) -> Result<Run, Faults> {
+        let question = find_question(question)?;
+        let mut faults = Faults::new();
+        let bench = Bench::from_tree(bench).map_err(|found| faults.extend(found)).ok();
+        let mut reader = Reader::strict();
+        let options = reader.part(Some(options), "/options", &["sweep", "solve", "uncertainty", "trials"]);
+        let option = |key: &str| options.and_then(|options| options.get(key)).filter(|tree| !tree.is_null());
+        let stated = Uncertainty::read(option("uncertainty"), "/options/uncertainty", &mut reader);
+        let run = reader.flag(option("trials"), "/options/trials");
+        faults.extend(reader.faults);
+        let (Some(mut bench), true) = (bench, faults.is_empty()) else {
+            return Err(faults);
+        };
+        if let Some(stated) = &mut bench.uncertainty {
+            stated.monte_carlo = stated.monte_carlo.or(Some(MonteCarlo::USUAL)).filter(|_| run);
+        }
+        let answer = (question.ask)(&bench)?;
+        let begun = match (&stated, &bench.uncertainty) {
+            (Some(stated), _) => {
+                uncertainty::begin(question, &bench, stated, "/options/uncertainty", |_| true)
+            }
+            (None, Some(stated)) => begin_on_bench(question, &bench, stated),
+            (None, None) => Ok(None),
+        };
+        let swept = option("sweep").map(|given| sweep(&bench, question, given));
+        let solved = option("solve").map(|given| solve(&bench, question, given));
+        let seed =
+            stated.or(bench.uncertainty).and_then(|stated| stated.monte_carlo).map_or(0, |run| run.seed);
+        match (begun, swept.transpose(), solved.transpose()) {
+            (Ok(begun), Ok(sweep), Ok(solve)) => {
+                let (uncertainty, trials) =
+                    begun.map_or((None, None), |begun| (Some(begun.uncertain), begun.trials));
+                let trials = trials.map(|trials| (trials, seed));
+                Ok(Run { asked: Asked { answer, uncertainty, sweep, solve }, trials })
+            }
+            (begun, swept, solved) => {
+                Err([begun.err(), swept.err(), solved.err()].into_iter().flatten().flatten().collect())
+            }
+        }
     }
+
+    /// Goes on by so many trials.
+    pub fn advance(&mut self, trials: usize) {
+        if let Some((run, _)) = &mut self.trials {
+            run.advance(trials);
+        }
+    }
+
+    /// Trials so far.
+    pub fn count(&self) -> usize {
+        self.trials.as_ref().map_or(0, |(run, _)| run.count())
+    }
+
+    /// Whether nothing is left to be done.
+    pub fn done(&self) -> bool {
+        self.trials.as_ref().is_none_or(|(run, _)| run.done())
+    }
+
+    /// The answer with what the trials gave so far.
+    pub fn finish(self) -> Asked {
+        let Asked { mut answer, uncertainty, sweep, solve } = self.asked;
+        let uncertainty = match (uncertainty, self.trials) {
+            (Some(uncertain), Some((trials, seed))) => Some(uncertain.with_trials(trials, seed)),
+            (uncertainty, _) => uncertainty,
+        };
+        if let Some(uncertain) = &uncertainty {
+            show(uncertain, answer.shown_mut());
+        }
+        Asked { answer, uncertainty, sweep, solve }
+    }
+}
+
+/// The doubts of a bench may concern other questions too.
+fn begin_on_bench(question: &Question, bench: &Bench, stated: &Uncertainty) -> Result<Option<Begun>, Faults> {
+    let of = stated.of.as_deref();
+    let known = of
+        .is_none_or(|of| (question.numbers)(bench).is_ok_and(|all| all.iter().any(|(name, _)| *name == of)));
+    // The number that is wanted may be one of another question.
+    let stated = Uncertainty { of: stated.of.clone().filter(|_| known), ..stated.clone() };
+    let concerns = |pointer: &str| question.fields.iter().any(|part| under(pointer, part));
+    uncertainty::begin(question, bench, &stated, "/uncertainty", concerns)
 }
 
 fn find_question(name: &str) -> Result<&'static Question, Faults> {
@@ -102,6 +188,8 @@ pub struct Followed {
     pub blocking: Faults,
     /// The answer.
     pub answer: Option<Answer>,
+    /// How well its main number is known, by the budget; trials are for [`Run`].
+    pub uncertainty: Option<Uncertain>,
 }
 
 /// Asks a question of a bench as it was typed. What is wrong in a place that the question does not read is
@@ -114,17 +202,35 @@ pub fn follow(question: &str, typed: &Tree, decimal_mark: &str) -> Followed {
         fields.iter().any(|field| under(&fault.pointer, field) || under(field, &fault.pointer))
     };
     let mut blocking: Faults = faults.iter().filter(|fault| concerns(fault)).cloned().collect();
-    let mut answer = None;
+    let (mut answer, mut uncertainty) = (None, None);
     if blocking.is_empty() {
         match found.clone().and_then(|question| (question.ask)(&bench)) {
-            Ok(found) => answer = Some(found),
+            Ok(found) => {
+                let mut found = found;
+                match doubts_of(question, &bench) {
+                    Ok(uncertain) => uncertainty = uncertain,
+                    // A doubt that cannot be worked with is named at its place; the answer stands without.
+                    Err(more) => faults.extend(more),
+                }
+                if let Some(uncertain) = &uncertainty {
+                    show(uncertain, found.shown_mut());
+                }
+                answer = Some(found);
+            }
             Err(missing) => {
                 faults.extend(missing.iter().cloned());
                 blocking = missing;
             }
         }
     }
-    Followed { understood, tables, faults, blocking, answer }
+    Followed { understood, tables, faults, blocking, answer, uncertainty }
+}
+
+/// The budget by the doubts that stand on a bench.
+fn doubts_of(question: &str, bench: &Bench) -> Result<Option<Uncertain>, Faults> {
+    let Some(stated) = &bench.uncertainty else { return Ok(None) };
+    let stated = Uncertainty { monte_carlo: None, ..stated.clone() };
+    Ok(begin_on_bench(find_question(question)?, bench, &stated)?.map(|begun| begun.uncertain))
 }
 
 /// Whether a pointer is that of a part or lies within it.

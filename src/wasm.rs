@@ -17,6 +17,44 @@ pub fn ask(question: JsValue, bench: JsValue, options: JsValue) -> Result<JsValu
     )
 }
 
+/// A question that is answered but for its trials, which go in slices.
+#[wasm_bindgen]
+pub struct Run(door::Run);
+
+#[wasm_bindgen]
+impl Run {
+    /// Answers all but the trials: `{ value }`, a [`Run`], or `{ faults }`.
+    pub fn begin(question: &str, bench: JsValue, options: JsValue) -> Result<JsValue, JsValue> {
+        let begun =
+            tree(bench, "").and_then(|bench| door::Run::begin(question, &bench, &tree(options, "/options")?));
+        let (name, value) = match begun {
+            Ok(run) => ("value", JsValue::from(Run(run))),
+            Err(faults) => ("faults", out(&faults)?),
+        };
+        named(name, &value)
+    }
+
+    /// Goes on by so many trials.
+    pub fn advance(&mut self, trials: u32) {
+        self.0.advance(trials as usize);
+    }
+
+    /// Trials so far.
+    pub fn count(&self) -> f64 {
+        self.0.count() as f64
+    }
+
+    /// Whether nothing is left to be done.
+    pub fn done(&self) -> bool {
+        self.0.done()
+    }
+
+    /// The answer with what the trials gave so far.
+    pub fn finish(self) -> Result<JsValue, JsValue> {
+        out(&self.0.finish())
+    }
+}
+
 /// All questions.
 #[wasm_bindgen]
 pub fn questions() -> Result<JsValue, JsValue> {
@@ -136,8 +174,12 @@ fn outcome<T: Serialize>(name: &str, result: Result<T, Faults>) -> Result<JsValu
         Ok(value) => (name, out(&value)?),
         Err(faults) => ("faults", out(&faults)?),
     };
+    named(name, &value)
+}
+
+fn named(name: &str, value: &JsValue) -> Result<JsValue, JsValue> {
     let object = js_sys::Object::new();
-    js_sys::Reflect::set(&object, &name.into(), &value)?;
+    js_sys::Reflect::set(&object, &name.into(), value)?;
     Ok(object.into())
 }
 

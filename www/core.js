@@ -10,10 +10,15 @@ const glue = () => /** @type {any} */ (globalThis).wasm_bindgen;
 /** @type {WebAssembly.Module | null} */
 let compiled = null;
 
+/** The compiled core, for a worker; nothing before the start. */
+export const coreModule = () => compiled;
+
+/** The core that the page carries, as it was built. */
+export const coreBytes = () => bytes((document.getElementById("core")?.textContent ?? "").trim());
+
 /** Decodes and starts the core that the page carries. */
 export function start() {
-  const text = document.getElementById("core")?.textContent ?? "";
-  compiled = new WebAssembly.Module(bytes(text.trim()));
+  compiled = new WebAssembly.Module(coreBytes());
   glue().initSync({ module: compiled });
 }
 

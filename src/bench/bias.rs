@@ -148,7 +148,7 @@ pub const FIELDS: &[Field] = &[
     Field {
         pointer: "/detector/avalanche/bias/table_step_k",
         name: "the step of the bias table",
-        kind: &kind::TEMPERATURE_STEP,
+        kind: &kind::TEMPERATURE_DIFFERENCE,
         limits: Limits::above(0.0, 500.0),
         usual: "empty: 5 K",
         place: |bench| Some(&mut bias(bench)?.table_step_k),

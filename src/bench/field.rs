@@ -95,6 +95,21 @@ pub fn field(pointer: &str) -> Option<&'static Field> {
     fields().find(|field| field.pointer == pointer)
 }
 
+/// What a number stands for when it is absent, for those that then stand for one.
+pub fn when_absent(pointer: &str) -> Option<f64> {
+    const ABSENT: &[(&str, f64)] = &[
+        ("/source/linewidth_nm", 0.0),
+        ("/path/loss_db", 0.0),
+        ("/detector/dark_current_bulk_a", 0.0),
+        ("/detector/dark_current_surface_a", 0.0),
+        ("/amplifier/noise/noise_figure_db", 0.0),
+        ("/meter/zero_offset_w", 0.0),
+        ("/meter/certificate/scale", 1.0),
+        ("/surroundings/background_power_w", 0.0),
+    ];
+    ABSENT.iter().find(|(known, _)| *known == pointer).map(|(_, value)| *value)
+}
+
 /// A row as the outside sees it.
 #[derive(Debug, Serialize)]
 pub struct FieldRow {

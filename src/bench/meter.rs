@@ -15,6 +15,10 @@ pub struct Meter {
     pub reading_dbm: Option<f64>,
     /// The wavelength it is set to, nm.
     pub set_wavelength_nm: Option<f64>,
+    /// What it shows without light, W; nothing means that it was zeroed.
+    pub zero_offset_w: Option<f64>,
+    /// Another reading of the same meter that this one is compared with.
+    pub comparison: Option<Comparison>,
     /// Its certificate of calibration.
     pub certificate: Option<Certificate>,
     /// The typical responsivity of its head, for a certificate of correction factors; nothing means that the
@@ -22,6 +26,17 @@ pub struct Meter {
     pub typical_curve: Option<Vec<ResponsivityPoint>>,
     /// The wavelengths of the table of corrections, nm; nothing means the usual ones.
     pub table_wavelengths_nm: Option<Vec<f64>>,
+}
+
+/// Another reading of the same meter.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Comparison {
+    /// What it showed, dBm.
+    pub reading_dbm: Option<f64>,
+    /// The wavelength it was set to, nm; nothing means the same as for the first reading.
+    pub set_wavelength_nm: Option<f64>,
+    /// The wavelength of the light, nm; nothing means the same light as for the first reading.
+    pub wavelength_nm: Option<f64>,
 }
 
 /// A certificate of calibration.
@@ -33,6 +48,9 @@ pub struct Certificate {
     pub coverage_factor: Option<f64>,
     /// The correlation between the errors of any two of its points; nothing means 1, the cautious choice.
     pub point_correlation: Option<f64>,
+    /// True over certified value, common to all of its points; nothing means 1. A drift since the calibration is a
+    /// doubt of it.
+    pub scale: Option<f64>,
     /// In rising order of wavelength.
     pub points: Vec<CertificatePoint>,
 }
@@ -80,6 +98,38 @@ pub const FIELDS: &[Field] = &[
         place: |bench| Some(&mut bench.meter.as_mut()?.set_wavelength_nm),
     },
     Field {
+        pointer: "/meter/zero_offset_w",
+        name: "the zero offset",
+        kind: &kind::POWER,
+        limits: Limits::between(-1.0, 1.0),
+        usual: "empty: zeroed; what it shows in the dark, in W",
+        place: |bench| Some(&mut bench.meter.as_mut()?.zero_offset_w),
+    },
+    Field {
+        pointer: "/meter/comparison/reading_dbm",
+        name: "the reading to compare with",
+        kind: &kind::POWER_LEVEL,
+        limits: LEVEL_LIMITS,
+        usual: "of the same meter, in dBm or W",
+        place: |bench| Some(&mut comparison(bench)?.reading_dbm),
+    },
+    Field {
+        pointer: "/meter/comparison/set_wavelength_nm",
+        name: "the wavelength setting of the other reading",
+        kind: &kind::WAVELENGTH,
+        limits: WAVELENGTH_LIMITS,
+        usual: "empty: the same setting",
+        place: |bench| Some(&mut comparison(bench)?.set_wavelength_nm),
+    },
+    Field {
+        pointer: "/meter/comparison/wavelength_nm",
+        name: "the wavelength of the other light",
+        kind: &kind::WAVELENGTH,
+        limits: WAVELENGTH_LIMITS,
+        usual: "empty: the same light",
+        place: |bench| Some(&mut comparison(bench)?.wavelength_nm),
+    },
+    Field {
         pointer: "/meter/certificate/coverage_factor",
         name: "the coverage factor k",
         kind: &kind::NUMBER,
@@ -95,7 +145,19 @@ pub const FIELDS: &[Field] = &[
         usual: "empty: 1, one common scale",
         place: |bench| Some(&mut certificate(bench)?.point_correlation),
     },
+    Field {
+        pointer: "/meter/certificate/scale",
+        name: "the scale of the certificate",
+        kind: &kind::NUMBER,
+        limits: Limits::between(0.5, 2.0),
+        usual: "empty: 1, as certified",
+        place: |bench| Some(&mut certificate(bench)?.scale),
+    },
 ];
+
+fn comparison(bench: &mut super::Bench) -> Option<&mut Comparison> {
+    bench.meter.as_mut()?.comparison.as_mut()
+}
 
 fn certificate(bench: &mut super::Bench) -> Option<&mut Certificate> {
     bench.meter.as_mut()?.certificate.as_mut()
@@ -120,13 +182,22 @@ impl CertificateForm {
 impl Meter {
     /// Reads a meter.
     pub fn read(tree: Option<&Tree>, reader: &mut Reader) -> Option<Meter> {
-        let keys =
-            ["reading_dbm", "set_wavelength_nm", "certificate", "typical_curve", "table_wavelengths_nm"];
+        let keys = [
+            "reading_dbm",
+            "set_wavelength_nm",
+            "zero_offset_w",
+            "comparison",
+            "certificate",
+            "typical_curve",
+            "table_wavelengths_nm",
+        ];
         let map = reader.part(tree, "/meter", &keys)?;
         let typical = map.get("typical_curve");
         Some(Meter {
             reading_dbm: reader.number(map.get("reading_dbm"), "/meter/reading_dbm"),
             set_wavelength_nm: reader.number(map.get("set_wavelength_nm"), "/meter/set_wavelength_nm"),
+            zero_offset_w: reader.number(map.get("zero_offset_w"), "/meter/zero_offset_w"),
+            comparison: read_comparison(map.get("comparison"), reader),
             certificate: read_certificate(map.get("certificate"), reader),
             typical_curve: points::read_responsivity(typical, "/meter/typical_curve", reader),
             table_wavelengths_nm: read_wavelengths(map.get("table_wavelengths_nm"), reader),
@@ -134,17 +205,35 @@ impl Meter {
     }
 }
 
+fn read_comparison(tree: Option<&Tree>, reader: &mut Reader) -> Option<Comparison> {
+    const AT: &str = "/meter/comparison";
+    let map = reader.part(tree, AT, &["reading_dbm", "set_wavelength_nm", "wavelength_nm"])?;
+    let mut number = |key: &str| reader.number(map.get(key), &format!("{AT}/{key}"));
+    Some(Comparison {
+        reading_dbm: number("reading_dbm"),
+        set_wavelength_nm: number("set_wavelength_nm"),
+        wavelength_nm: number("wavelength_nm"),
+    })
+}
+
 fn read_certificate(tree: Option<&Tree>, reader: &mut Reader) -> Option<Certificate> {
     const AT: &str = "/meter/certificate";
-    let map = reader.part(tree, AT, &["form", "coverage_factor", "point_correlation", "points"])?;
+    let map = reader.part(tree, AT, &["form", "coverage_factor", "point_correlation", "scale", "points"])?;
     let mut number = |key: &str| reader.number(map.get(key), &format!("{AT}/{key}"));
     let (coverage_factor, point_correlation) = (number("coverage_factor"), number("point_correlation"));
+    let scale = number("scale");
     let form = reader.word(map.get("form"), &format!("{AT}/form"), CertificateForm::WORDS);
     if map.get("points").is_none_or(Tree::is_null) {
         reader.missing(&format!("{AT}/points"), "A certificate needs its points: wavelength and value.");
     }
     let points = read_points(map.get("points"), &format!("{AT}/points"), reader)?;
-    (!points.is_empty()).then_some(Certificate { form: form?, coverage_factor, point_correlation, points })
+    (!points.is_empty()).then_some(Certificate {
+        form: form?,
+        coverage_factor,
+        point_correlation,
+        scale,
+        points,
+    })
 }
 
 fn read_points(tree: Option<&Tree>, pointer: &str, reader: &mut Reader) -> Option<Vec<CertificatePoint>> {

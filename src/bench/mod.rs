@@ -16,6 +16,7 @@ pub mod reader;
 pub mod source;
 pub mod spectrum;
 pub mod surroundings;
+pub mod uncertainty;
 
 use crate::fault::{Code, Fault, Faults};
 use crate::tree::Tree;
@@ -28,6 +29,7 @@ use reader::Reader;
 use serde::Serialize;
 use source::Source;
 use surroundings::Surroundings;
+use uncertainty::Uncertainty;
 
 /// The format of a bench file.
 pub const SCHEMA: &str = "leastlight.bench/1";
@@ -53,6 +55,8 @@ pub struct Bench {
     pub meter: Option<Meter>,
     /// What is around.
     pub surroundings: Option<Surroundings>,
+    /// How well the numbers are known.
+    pub uncertainty: Option<Uncertainty>,
 }
 
 impl Bench {
@@ -68,6 +72,7 @@ impl Bench {
             decision: None,
             meter: None,
             surroundings: None,
+            uncertainty: None,
         }
     }
 
@@ -91,6 +96,7 @@ impl Bench {
             "meter",
             "gate",
             "surroundings",
+            "uncertainty",
         ];
         let Some(map) = reader.part(Some(tree), "", &keys) else {
             if reader.faults.is_empty() && reader.mark().is_none() {
@@ -110,6 +116,7 @@ impl Bench {
             decision: Decision::read(map.get("decision"), reader),
             meter: Meter::read(map.get("meter"), reader),
             surroundings: Surroundings::read(map.get("surroundings"), reader),
+            uncertainty: Uncertainty::read(map.get("uncertainty"), "/uncertainty", reader),
         }
     }
 }

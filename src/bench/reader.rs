@@ -183,6 +183,19 @@ impl Reader {
         }
     }
 
+    /// True or false; absent is false.
+    pub fn flag(&mut self, tree: Option<&Tree>, pointer: &str) -> bool {
+        match tree {
+            None | Some(Tree::Null) => false,
+            Some(Tree::Bool(value)) => *value,
+            Some(other) => {
+                let sentence = format!("{} must be true or false.", spoken(pointer));
+                self.faults.push(Fault::new(pointer, Code::Unreadable, other.clone(), &sentence));
+                false
+            }
+        }
+    }
+
     /// Refuses whatever stands at a place that is kept free.
     pub fn refuse(&mut self, tree: Option<&Tree>, pointer: &str, sentence: &str) {
         if let Some(tree) = tree.filter(|tree| !tree.is_null()) {

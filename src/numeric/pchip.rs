@@ -147,9 +147,34 @@ impl Pchip {
         Some(weights)
     }
 
+    /// The curve at `x` if the table held other values: `y` gives them by index, and is asked for those around `x` only.
+    /// Nothing outside of its ends.
+    #[inline]
+    pub fn value_with(&self, x: f64, y: impl Fn(usize) -> f64) -> Option<f64> {
+        let (index, [left, right]) = self.interval(x)?;
+        let gap = |before: usize| {
+            let (from, to) = (self.nodes.get(before)?, self.nodes.get(before + 1)?);
+            let width = to.x - from.x;
+            Some(Gap { width, slope: (y(before + 1) - y(before)) / width })
+        };
+        let slope = |at: usize| match (at.checked_sub(1).and_then(gap), gap(at)) {
+            (Some(before), Some(after)) => inner_slope(before, after).0,
+            (None, Some(first)) => end_slope(first, gap(1)).0,
+            (Some(last), None) => end_slope(last, at.checked_sub(2).and_then(gap)).0,
+            (None, None) => 0.0,
+        };
+        let [h00, h10, h01, h11] = hermite(left, right, x);
+        Some(h00 * y(index) + h10 * slope(index) + h01 * y(index + 1) + h11 * slope(index + 1))
+    }
+
     /// Every x of the table: where the cubic pieces meet.
     pub fn places(&self) -> impl Iterator<Item = f64> {
         self.nodes.iter().map(|node| node.x)
+    }
+
+    /// The y of a point of the table, counted from 0; 0 where there is none.
+    pub fn y(&self, index: usize) -> f64 {
+        self.nodes.get(index).map_or(0.0, |node| node.y)
     }
 
     /// The first x of the table.

@@ -187,7 +187,7 @@ pub const TEMPERATURE_C: Kind = Kind {
 };
 
 /// A difference of temperatures, kept in K.
-pub const TEMPERATURE_STEP: Kind =
+pub const TEMPERATURE_DIFFERENCE: Kind =
     Kind { unit: "K", style: Style::Plain, units: &[plain("K"), plain("°C"), plain("C")] };
 
 /// A voltage, kept in V.
@@ -196,3 +196,17 @@ pub const VOLTAGE: Kind = Kind { unit: "V", style: Style::Plain, units: &[si("V"
 /// A change of voltage with temperature, kept in V/K.
 pub const VOLTAGE_PER_KELVIN: Kind =
     Kind { unit: "V/K", style: Style::Plain, units: &[si("V/K"), si("V/°C"), si("V/C")] };
+
+/// A difference of optical powers, kept in W.
+pub const POWER_DIFFERENCE: Kind = Kind { unit: "W", style: Style::Prefixed, units: &[si("W")] };
+
+/// The kind of a difference of two values of a kind: two levels differ by decibels, two wavelengths by no frequency.
+pub fn difference(kind: &'static Kind) -> &'static Kind {
+    match kind.unit {
+        "dBm" | "dB/Hz" => &DECIBEL,
+        "nm" => &LINE_WIDTH,
+        "W" => &POWER_DIFFERENCE,
+        "°C" | "K" => &TEMPERATURE_DIFFERENCE,
+        _ => kind,
+    }
+}

@@ -73,18 +73,75 @@ pub fn prefixed(value: f64, unit: &str, figures: usize) -> String {
     format!("{} {prefix}{unit}", place_point(&digits, exponent - power))
 }
 
+/// A value with its standard uncertainty as a metrologist writes it, both to two figures of the uncertainty: `1.234(15) µW`.
+///
+/// Units of levels and shares take no prefix.
+///
+/// Source: JCGM 100:2008, 7.2.2 and 7.2.6.
+pub fn concise(value: f64, standard: f64, unit: &str) -> String {
+    let Some(Scaled { value, decimals, power, unit }) = scaled(value, standard, unit) else {
+        return prefixed(value, unit, 4);
+    };
+    // Without decimals the two figures may count tens: 1230(150).
+    let last = standard * 10f64.powi(-power);
+    let figures = match decimals {
+        0 => format!("{:.0}", round_to_two(last)),
+        _ => format!("{:.0}", last * 10f64.powi(i32::try_from(decimals).unwrap_or(0))),
+    };
+    format!("{}({figures}){}{unit}", fixed(value, decimals), if unit.is_empty() { "" } else { " " })
+}
+
 /// A value and the half-width of its interval, both to two figures of the half-width: `1.234 ± 0.015 µW`.
 pub fn plus_minus(value: f64, half_width: f64, unit: &str) -> String {
-    if value == 0.0 || half_width <= 0.0 {
+    let Some(Scaled { value, decimals, power, unit }) = scaled(value, half_width, unit) else {
         return prefixed(value, unit, 4);
+    };
+    let half_width = half_width * 10f64.powi(-power);
+    let half_width = if decimals == 0 { round_to_two(half_width) } else { half_width };
+    let joined = format!("{} ± {} {unit}", fixed(value, decimals), fixed(half_width, decimals));
+    joined.trim_end().to_owned()
+}
+
+/// A value in the unit with the prefix that suits, and how many decimals two figures of its uncertainty leave.
+struct Scaled {
+    value: f64,
+    decimals: usize,
+    power: i32,
+    unit: String,
+}
+
+fn scaled(value: f64, uncertainty: f64, unit: &str) -> Option<Scaled> {
+    if !(uncertainty > 0.0 && uncertainty.is_finite()) {
+        return None;
     }
-    // The rounding itself may carry: 0.0996 is shown as 0.100, so its exponent is read after rounding.
-    let (_, last) = rounded(half_width, 2);
-    let (_, first) = rounded(value, usize::try_from(first_of(value) - last + 2).unwrap_or(1));
-    let (power, prefix) = prefix_for(first.max(last));
+    let (_, last) = rounded(uncertainty, 2);
+    let (power, prefix) = match takes_prefix(unit) {
+        false => (0, ""),
+        true if value == 0.0 => prefix_for(last),
+        true => {
+            let figures = usize::try_from(first_of(value) - last + 2).unwrap_or(1);
+            let (_, first) = rounded(value, figures.max(1));
+            prefix_for(first.max(last))
+        }
+    };
     let decimals = usize::try_from(power - last + 1).unwrap_or(0);
-    let scale = 10f64.powi(-power);
-    format!("{} ± {} {prefix}{unit}", fixed(value * scale, decimals), fixed(half_width * scale, decimals))
+    let value = value * 10f64.powi(-power);
+    let value = if power - last + 1 < 0 { round_at(value, last - power - 1) } else { value };
+    Some(Scaled { value, decimals, power, unit: format!("{prefix}{unit}") })
+}
+
+fn takes_prefix(unit: &str) -> bool {
+    !matches!(unit, "" | "dB" | "dBm" | "dB/Hz" | "%" | "%/nm" | "nm" | "A/W" | "°C" | "K")
+}
+
+fn round_to_two(value: f64) -> f64 {
+    format!("{value:.1e}").parse().unwrap_or(value)
+}
+
+/// Rounded to a power of ten above 1.
+fn round_at(value: f64, power: i32) -> f64 {
+    let step = 10f64.powi(power);
+    (value / step).round() * step
 }
 
 /// The power of ten of the first figure.

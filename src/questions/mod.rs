@@ -3,6 +3,7 @@
 pub mod avalanche_bias;
 pub mod curve;
 pub mod needs;
+pub mod prepared;
 pub mod reading;
 pub mod sensitivity;
 pub mod shown;
@@ -11,6 +12,7 @@ pub mod transfer;
 
 use crate::bench::Bench;
 use crate::fault::Faults;
+use prepared::Prepared;
 use serde::Serialize;
 
 /// Named numbers of an answer; a number that does not exist for this bench is absent.
@@ -29,6 +31,10 @@ pub struct Question {
     pub ask: fn(&Bench) -> Result<Answer, Faults>,
     /// Only its numbers, for sweeps and searches.
     pub numbers: fn(&Bench) -> Result<Numbers, Faults>,
+    /// The number that the headline states, and whose uncertainty is wanted first.
+    pub main: &'static str,
+    /// One of its numbers made ready to be asked for many times.
+    pub prepare: fn(&Bench, &'static str) -> Result<Prepared, Faults>,
 }
 
 /// All questions.
@@ -53,6 +59,8 @@ pub const QUESTIONS: &[Question] = &[
         ],
         ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
         numbers: sensitivity::numbers,
+        main: "average_power_w",
+        prepare: sensitivity::prepare,
     },
     Question {
         name: "reading",
@@ -66,6 +74,8 @@ pub const QUESTIONS: &[Question] = &[
         ],
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
+        main: "power_w",
+        prepare: reading::prepare,
     },
     Question {
         name: "avalanche_bias",
@@ -73,6 +83,8 @@ pub const QUESTIONS: &[Question] = &[
         fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
         ask: |bench| avalanche_bias::ask(bench).map(|answer| Answer::AvalancheBias(Box::new(answer))),
         numbers: avalanche_bias::numbers,
+        main: "bias_v",
+        prepare: avalanche_bias::prepare,
     },
 ];
 
@@ -86,4 +98,15 @@ pub enum Answer {
     Reading(Box<reading::Answer>),
     /// Where the avalanche bias should sit.
     AvalancheBias(Box<avalanche_bias::Answer>),
+}
+
+impl Answer {
+    /// The answer as it is shown, and what is drawn.
+    pub fn shown_mut(&mut self) -> (&mut shown::Shown, &mut Vec<curve::Curve>) {
+        match self {
+            Answer::Sensitivity(answer) => (&mut answer.shown, &mut answer.curves),
+            Answer::Reading(answer) => (&mut answer.shown, &mut answer.curves),
+            Answer::AvalancheBias(answer) => (&mut answer.shown, &mut answer.curves),
+        }
+    }
 }

@@ -29,6 +29,8 @@ pub struct Headline {
     pub figure: String,
     /// The sentence that goes on from it.
     pub sentence: String,
+    /// How well the figure is known; empty where nothing is stated.
+    pub uncertainty: String,
     /// The figure for a spreadsheet, with its unit.
     pub copy: String,
 }

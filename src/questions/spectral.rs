@@ -45,6 +45,22 @@ impl Spectral {
         }
     }
 
+    /// The value at a wavelength if each point's were larger by a share of it; nothing outside the table.
+    ///
+    /// * `shares` – one a point
+    pub fn at_with(&self, wavelength_nm: f64, shares: &[f64]) -> Option<f64> {
+        match self {
+            Spectral::Point { wavelength_nm: known, value } => {
+                let share = shares.first().copied().unwrap_or(0.0);
+                (wavelength_nm == *known).then_some(value * (1.0 + share))
+            }
+            Spectral::Curve(curve) => {
+                let known = |index: usize| curve.y(index) * (1.0 + shares.get(index).copied().unwrap_or(0.0));
+                curve.value_with(wavelength_nm, known)
+            }
+        }
+    }
+
     /// The change of the value per nm; nothing outside the table, and nothing for a single point.
     pub fn slope(&self, wavelength_nm: f64) -> Option<f64> {
         match self {

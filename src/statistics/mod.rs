@@ -1,4 +1,5 @@
 //! Statements about chance.
 
 pub mod normal;
+pub mod shape;
 pub mod transfer;

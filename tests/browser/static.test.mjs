@@ -24,6 +24,9 @@ const withMarkup = (addition) => page.replace("</body>", () => `${addition}</bod
 const withCore = (addition) =>
     page.replace(/(id="core">)([^<]*)/, (_, tag, base64) => tag + Buffer.concat([Buffer.from(base64, "base64"), Buffer.from(addition)]).toString("base64"));
 
+/** The worker's script with something added; it is text to the page, so it has no hash. */
+const withWorker = (addition) => page.replace(/(id="worker">)/, (tag) => tag + addition);
+
 test("the shipped page has nothing that reaches out", () => {
     assert.deepEqual(faultsOf(page, [process.cwd()]), []);
 });
@@ -61,6 +64,10 @@ const PLANTED = {
     "a new window, in short": [withScript(';open("x")'), "a new window"],
     "a script loaded later": [withScript(';import("x")'), "a script loaded later"],
     "a script loaded later by the worker": [withScript(';importScripts("x")'), "a script loaded later"],
+    "a script that the worker itself would load": [withWorker('importScripts("x");'), "a script loaded later"],
+    "an address in the worker": [withWorker(`var a="${scheme}//elsewhere.invalid/";`), "an address"],
+    "a block of data that nobody knows": [withMarkup('<script type="text/plain" id="other">a</script>'), "the data blocks"],
+    "a second worker": [withMarkup('<script type="text/plain" id="worker">a</script>'), "the data blocks"],
     "a folder of somebody's machine": [withScript(';var a="/home' + '/somebody/x"'), "a folder of the building machine"],
     "a folder inside the core": [withCore("/root" + "/registry/src"), "a folder of the building machine"],
     "an address inside the core": [withCore(`${scheme}//elsewhere.invalid/`), "an address"],

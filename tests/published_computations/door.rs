@@ -5,8 +5,12 @@ use leastlight::door;
 use leastlight::tree::Tree;
 use serde_json::Value;
 
-pub const ALL: &[(&str, Computation)] =
-    &[("ask_sensitivity", sensitivity), ("ask_reading", reading), ("ask_avalanche_bias", avalanche_bias)];
+pub const ALL: &[(&str, Computation)] = &[
+    ("ask_sensitivity", sensitivity),
+    ("ask_reading", reading),
+    ("ask_avalanche_bias", avalanche_bias),
+    ("ask_uncertainty", uncertainty),
+];
 
 fn ask(question: &str, given: &mut Inputs) -> Result<Value, String> {
     let bench = given.value("bench")?.try_into::<Tree>().map_err(|error| error.to_string())?;
@@ -122,5 +126,30 @@ fn avalanche_bias(given: &mut Inputs) -> Result<Outputs, String> {
     outputs.insert("table_bias_v", column("bias_v").into());
     outputs.insert("table_left_gain", column("left_gain").into());
     outputs.insert("table_left_lost_db", column("left_lost_db").into());
+    Ok(outputs)
+}
+
+fn uncertainty(given: &mut Inputs) -> Result<Outputs, String> {
+    let tree = |value: toml::Value| value.try_into::<Tree>().map_err(|error| error.to_string());
+    let (question, bench) = (given.word("question")?, tree(given.value("bench")?)?);
+    let doubts = tree(given.value("uncertainty")?)?;
+    let pointers: Vec<Tree> = match doubts.get("inputs") {
+        Some(Tree::List(inputs)) => inputs.iter().filter_map(|input| input.get("pointer").cloned()).collect(),
+        _ => Vec::new(),
+    };
+    let options = Tree::Map(vec![("uncertainty".to_owned(), doubts)]);
+    let asked = door::ask(&question, &bench, &options).map_err(|faults| format!("{faults:?}"))?;
+    let answer = serde_json::to_value(asked).map_err(|error| error.to_string())?;
+    let mut outputs = Outputs::new();
+    let found = &answer["uncertainty"];
+    let names = ["estimate", "standard", "effective_degrees_of_freedom", "coverage_factor", "expanded"];
+    take(found, &names, &mut outputs);
+    let contribution = |pointer: &Tree| {
+        let rows = found["budget"].as_array()?;
+        let row =
+            rows.iter().find(|row| Tree::from(row["pointer"].as_str().unwrap_or_default()) == *pointer)?;
+        row["contribution"].as_f64()
+    };
+    outputs.insert("contributions", pointers.iter().filter_map(contribution).collect::<Vec<_>>().into());
     Ok(outputs)
 }

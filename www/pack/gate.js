@@ -8,7 +8,10 @@ import { readFileSync } from "node:fs";
 import { pathToFileURL } from "node:url";
 
 /** Names of vocabularies: they look like addresses, and nothing is ever fetched from them. */
-const VOCABULARIES = /\bhttp:\/\/www\.w3\.org\/(2000\/svg|1999\/xhtml|1999\/xlink|2000\/xmlns\/|XML\/1998\/namespace|1998\/Math\/MathML)(?![\w./-])/g;
+const VOCABULARY = String.raw`\bhttp://www\.w3\.org/(?:2000/svg|1999/xhtml|1999/xlink|2000/xmlns/|2000/09/xmldsig#|XML/1998/namespace|1998/Math/MathML)`;
+const VOCABULARIES = new RegExp(String.raw`${VOCABULARY}(?![\w./-])`, "g");
+/** Inside the core one text stands right behind the other. */
+const VOCABULARIES_IN_CORE = new RegExp(VOCABULARY, "g");
 
 /** Slashes may be missing from an address, but then a quotation mark or an attribute must hold it: a minifier's `a?ws:b` is none. */
 const ADDRESS = /\b(?:https?|wss?|ftp):\/+[\w[]|["'`=]\s*(?:https?|wss?|ftp):[\w[]|["'`(=]\s*\/\/[a-z0-9[]/gi;
@@ -59,14 +62,16 @@ const CHARSET = '<meta charset="utf-8">';
 function partsOf(page) {
     /** @type {string[]} */
     const scripts = [];
-    /** @type {string[]} */
+    /** @type {{ id: string, text: string }[]} */
     const data = [];
     /** @type {string[]} */
     const styles = [];
     const markup = page
         .replace(/<script\b([^>]*)>(.*?)<\/script\s*>/gis, (_, attributes, text) => {
             const type = /\btype\s*=\s*["']?([^"'\s>]*)/i.exec(attributes)?.[1];
-            (type === undefined || /^(|module|importmap|speculationrules|.*(java|ecma)script.*)$/i.test(type) ? scripts : data).push(text);
+            const runs = type === undefined || /^(|module|importmap|speculationrules|.*(java|ecma)script.*)$/i.test(type);
+            if (runs) scripts.push(text);
+            else data.push({ id: /\bid\s*=\s*["']?([^"'\s>]*)/i.exec(attributes)?.[1] ?? "", text });
             return `<script${attributes}></script>`;
         })
         .replace(/<style\b([^>]*)>(.*?)<\/style\s*>/gis, (_, attributes, text) => {
@@ -80,9 +85,10 @@ function partsOf(page) {
  * @param {[string, RegExp][]} rules
  * @param {string} text
  * @param {string} where
+ * @param {RegExp} vocabularies
  */
-function search(rules, text, where) {
-    const readable = text.replace(VOCABULARIES, "");
+function search(rules, text, where, vocabularies = VOCABULARIES) {
+    const readable = text.replace(vocabularies, "");
     return rules.flatMap(([what, pattern]) =>
         [...readable.matchAll(pattern)].map((hit) => {
             const near = readable.slice(Math.max(0, hit.index - 30), hit.index + hit[0].length + 50);
@@ -123,19 +129,22 @@ function policyFaults(page, scripts, styles) {
  */
 export function faultsOf(page, folders = []) {
     const { markup, scripts, styles, data } = partsOf(page);
+    const held = (/** @type {string} */ wanted) => data.filter(({ id }) => id === wanted).map(({ text }) => text);
     // The core is base64 in the page; what it says is inside. Each byte becomes one character.
-    const core = data.map((text) => Buffer.from(text, "base64").toString("latin1"));
+    const core = held("core").map((text) => Buffer.from(text, "base64").toString("latin1"));
+    const ids = data.map(({ id }) => id).join(" and ");
     const texts = [page, ...core];
     return [
         ...policyFaults(page, scripts, styles),
         ...search([...EVERYWHERE, ...IN_MARKUP], markup, "the markup"),
         ...styles.flatMap((text) => search([...EVERYWHERE, ...IN_STYLE], text, "a style sheet")),
         ...scripts.flatMap((text) => search([...EVERYWHERE, ...IN_SCRIPT], text, "a script")),
-        ...core.flatMap((text) => search(EVERYWHERE, text, "the core")),
+        ...held("worker").flatMap((text) => search([...EVERYWHERE, ...IN_SCRIPT], text, "the worker")),
+        ...core.flatMap((text) => search(EVERYWHERE, text, "the core", VOCABULARIES_IN_CORE)),
         ...folders
             .filter((folder) => folder.length > 1 && texts.some((text) => text.includes(`${folder}/`)))
             .map((folder) => `a folder of the building machine: ${folder}`),
-        ...(data.length === 1 ? [] : [`${data.length} data blocks, not one`]),
+        ...(ids === "core and worker" ? [] : [`the data blocks are not the core and the worker: ${ids}`]),
     ];
 }
 

@@ -7,6 +7,7 @@ mod shown;
 mod table;
 
 use super::curve::Curve;
+use super::prepared::Prepared;
 use super::sensitivity::{self, NoneBecause};
 use super::shown::Shown;
 use crate::bench::Bench;
@@ -117,9 +118,27 @@ const LIMIT_FACTOR: f64 = 2.0;
 pub fn ask(bench: &Bench) -> Result<Answer, Faults> {
     let setup = Setup::new(bench)?;
     let mut answer = figures(&setup);
+    answer.table = table::rows(&setup, &answer).unwrap_or_default();
     answer.curves = curves::curves(&setup, &answer);
     answer.shown = shown::shown(&setup, bench, &answer);
     Ok(answer)
+}
+
+/// One of the numbers, made ready; the bias itself does without all that stands beside it.
+pub fn prepare(bench: &Bench, of: &'static str) -> Result<Prepared, Faults> {
+    // What is missing is said once, before the trials.
+    Setup::new(bench)?;
+    let bias_v = |bench: &Bench| {
+        let setup = Setup::new(bench).ok()?;
+        let best = Scaled { setup: &setup, rate: 1.0 }.best();
+        let currents = setup.currents(setup.received_w().or(best.ok().map(|best| best.power_w))?);
+        let biased = setup.biased(setup.temperature_c);
+        sit(&setup, &best, biased.as_ref(), Some(&currents)).ok().map(|sits| sits.bias_v)
+    };
+    match of {
+        "bias_v" => Ok(Prepared { certificate: None, value: Box::new(move |bench, _| bias_v(bench)) }),
+        _ => Ok(Prepared::by_numbers(numbers, of)),
+    }
 }
 
 /// The numbers that a sweep or a search may follow, without curves or text.
@@ -268,7 +287,6 @@ fn sit_down(setup: &Setup, biased: &Biased, currents: &Currents, sits: &Sits, an
     let limit_a = LIMIT_FACTOR * current_a;
     answer.current_limit_a =
         Some(setup.maximum_current_a.map_or(limit_a, |most_a| limit_a.min(most_a))).filter(|a| *a > 0.0);
-    answer.table = table::rows(setup, currents, at.gain, bias_v, power_w);
 }
 
 /// The least average power at a gain, W; nothing beyond what is known of the noise.

@@ -91,12 +91,14 @@ fn headline(setup: &Setup, answer: &Answer) -> Headline {
                     scientific(setup.receiver.target, 3)
                 ),
                 copy: format!("{bias_v} V"),
+                uncertainty: String::new(),
             }
         }
         (because, ..) => Headline {
             figure: "No such bias".to_owned(),
             sentence: format!("because {}.", because.as_ref().map_or("", |none| none.reason.as_str())),
             copy: "no such bias".to_owned(),
+            uncertainty: String::new(),
         },
     }
 }

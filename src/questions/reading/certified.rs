@@ -26,6 +26,8 @@ pub struct Certified<'b> {
     pub(super) values: Spectral,
     /// The typical responsivity of the head, where a certificate of correction factors needs one.
     pub(super) typical: Option<Spectral>,
+    /// True over certified value.
+    pub(super) scale: f64,
 }
 
 /// The factor from reading to power, and the responsivities behind it where they are known.
@@ -62,12 +64,14 @@ impl<'b> Certified<'b> {
             CertificateForm::Responsivity => None,
             CertificateForm::CorrectionFactor => table.and_then(|points| Spectral::responsivity(points)),
         };
-        Ok(Certified { certificate, values, typical })
+        let scale = certificate.scale.unwrap_or(1.0);
+        Ok(Certified { certificate, values, typical, scale })
     }
 
     /// True over shown power for light of one wavelength, the meter being set to another.
     pub fn at(&self, set_nm: f64, source_nm: f64) -> Result<Found, Fault> {
-        let value = self.values.at_field(source_nm, SOURCE, CERTIFICATE);
+        // What the meter has stored for its setting is as certified; what is true of the light may have moved.
+        let value = self.values.at_field(source_nm, SOURCE, CERTIFICATE).map(|value| value * self.scale);
         match (self.certificate.form, &self.typical) {
             (CertificateForm::Responsivity, _) => {
                 let (set, source) = (self.values.at_field(set_nm, SETTING, CERTIFICATE)?, value?);

@@ -149,9 +149,9 @@ impl Certified<'_> {
         let mean = self.mean(shares)?;
         let mut weights = vec![0.0; self.certificate.points.len()];
         for part in shares {
-            // ∂R/∂v for the value v of a certificate: 1 where it is R, −R/v where it divides.
+            // ∂R/∂v for the certified value v: its scale where it is R, −R/v where it divides.
             let by_value = match self.certificate.form {
-                CertificateForm::Responsivity => 1.0,
+                CertificateForm::Responsivity => self.scale,
                 CertificateForm::CorrectionFactor => {
                     -self.responsivity(part.wavelength_nm)? / self.values.at(part.wavelength_nm)?
                 }
@@ -182,7 +182,7 @@ impl Certified<'_> {
 
     /// The responsivity at a wavelength, A/W: that of the certificate, or the typical one over the correction factor.
     pub fn responsivity(&self, wavelength_nm: f64) -> Option<f64> {
-        let value = self.values.at(wavelength_nm)?;
+        let value = self.values.at(wavelength_nm)? * self.scale;
         match (self.certificate.form, &self.typical) {
             (CertificateForm::Responsivity, _) => Some(value),
             (CertificateForm::CorrectionFactor, Some(typical)) => Some(typical.at(wavelength_nm)? / value),

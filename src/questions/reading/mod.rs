@@ -3,6 +3,7 @@
 pub(super) mod certified;
 mod light;
 mod over_spectrum;
+mod prepared;
 mod shown;
 
 use super::curve::{Axis, Curve, Line, Mark, Scale, evenly};
@@ -10,10 +11,12 @@ use super::needs::Needs;
 use super::shown::Shown;
 use crate::bench::Bench;
 use crate::bench::meter::USUAL_WAVELENGTHS_NM;
-use crate::fault::{Fault, Faults};
+use crate::fault::{Code, Fault, Faults};
 use crate::physics::decibel::{db_from_ratio, dbm_from_watt, watt_from_dbm};
+use crate::tree::Tree;
 use certified::{Certified, SETTING, SOURCE};
 use light::Light;
+pub use prepared::prepare;
 use serde::Serialize;
 
 /// The power behind a reading, when the light has another wavelength than the meter is set to.
@@ -23,8 +26,12 @@ pub struct Answer {
     pub power_w: f64,
     /// True power, dBm.
     pub power_dbm: f64,
-    /// What the meter shows, W.
+    /// What the meter shows, less its zero offset, W.
     pub reading_w: f64,
+    /// True power over that of the reading it is compared with.
+    pub ratio: Option<f64>,
+    /// The same, dB.
+    pub ratio_db: Option<f64>,
     /// To be added to a reading in dBm, dB.
     pub correction_db: f64,
     /// To be multiplied with a reading in W.
@@ -105,6 +112,8 @@ pub fn numbers(bench: &Bench) -> Result<Vec<(&'static str, Option<f64>)>, Faults
         ("correction_factor", Some(answer.correction_factor)),
         ("responsivity_set_a_per_w", answer.responsivity_set_a_per_w),
         ("responsivity_source_a_per_w", answer.responsivity_source_a_per_w),
+        ("ratio", answer.ratio),
+        ("ratio_db", answer.ratio_db),
         ("averaging_percent", answer.averaging_percent),
         ("expanded_percent", uncertainty.map(|uncertainty| uncertainty.expanded_percent)),
     ])
@@ -162,12 +171,19 @@ fn figures(bench: &Bench) -> Result<(Answer, Given<'_>), Faults> {
     let given = given(bench)?;
     let found = given.certified.over(given.set_nm, &given.light).map_err(|fault| vec![fault])?;
     let correction_db = db_from_ratio(found.factor);
-    let power_dbm = given.reading_dbm + correction_db;
-    let power_w = watt_from_dbm(power_dbm);
+    let reading_w = shown_w(bench, given.reading_dbm, "/meter/zero_offset_w").map_err(|fault| vec![fault])?;
+    let power_w = reading_w * found.factor;
+    let power_dbm = match bench.meter.as_ref().and_then(|meter| meter.zero_offset_w) {
+        None => given.reading_dbm + correction_db,
+        Some(_) => dbm_from_watt(power_w),
+    };
+    let ratio = ratio(bench, &given, power_w)?;
     let answer = Answer {
         power_w,
         power_dbm,
-        reading_w: watt_from_dbm(given.reading_dbm),
+        reading_w,
+        ratio,
+        ratio_db: ratio.map(db_from_ratio),
         correction_db,
         correction_factor: found.factor,
         responsivity_set_a_per_w: found.set_a_per_w,
@@ -184,6 +200,44 @@ fn figures(bench: &Bench) -> Result<(Answer, Given<'_>), Faults> {
         shown: Shown::default(),
     };
     Ok((answer, given))
+}
+
+/// What a reading is without the zero offset, W.
+fn shown_w(bench: &Bench, reading_dbm: f64, pointer: &str) -> Result<f64, Fault> {
+    let offset_w = bench.meter.as_ref().and_then(|meter| meter.zero_offset_w).unwrap_or(0.0);
+    let shown_w = watt_from_dbm(reading_dbm) - offset_w;
+    if shown_w > 0.0 {
+        return Ok(shown_w);
+    }
+    let sentence =
+        "The zero offset is as large as the reading, so no light is left that a power could be given of.";
+    Err(Fault::new(pointer, Code::Conflict, Tree::Number(offset_w), sentence))
+}
+
+/// The power over that of the reading it is compared with; nothing where there is no other.
+fn ratio(bench: &Bench, given: &Given, power_w: f64) -> Result<Option<f64>, Faults> {
+    let Some(comparison) = bench.meter.as_ref().and_then(|meter| meter.comparison.as_ref()) else {
+        return Ok(None);
+    };
+    let mut needs = Needs::default();
+    let reading_dbm = needs.number(comparison.reading_dbm, "/meter/comparison/reading_dbm");
+    let other_w = reading_dbm
+        .and_then(|reading_dbm| needs.found(shown_w(bench, reading_dbm, "/meter/comparison/reading_dbm")));
+    let set_nm = comparison.set_wavelength_nm.unwrap_or(given.set_nm);
+    let light = comparison.wavelength_nm.map_or_else(|| given.light.clone(), Light::One);
+    let found = given.certified.over(set_nm, &light).map_err(|fault| {
+        // The wavelengths that are at fault are those of the other reading, where it has its own.
+        let pointer = match fault.pointer.as_str() {
+            SETTING if comparison.set_wavelength_nm.is_some() => "/meter/comparison/set_wavelength_nm",
+            SOURCE if comparison.wavelength_nm.is_some() => "/meter/comparison/wavelength_nm",
+            other => other,
+        };
+        Fault { pointer: pointer.to_owned(), ..fault }
+    });
+    let found = needs.found(found);
+    needs
+        .all(Some(()))
+        .and_then(|()| Ok(other_w.zip(found).map(|(other_w, found)| power_w / (other_w * found.factor))))
 }
 
 fn averaging_percent(given: &Given, factor: f64) -> Option<f64> {

@@ -36,14 +36,13 @@ pub fn shown(bench: &Bench, given: &Given, answer: &Answer) -> Shown {
 }
 
 fn headline(answer: &Answer) -> Headline {
-    let power = match &answer.certificate_uncertainty {
-        Some(of) => format!(
+    let uncertainty = answer.certificate_uncertainty.as_ref().map_or_else(String::new, |of| {
+        format!(
             "{} (k = {}, from the certificate alone)",
             plus_minus(answer.power_w, of.expanded_w, "W"),
             brief(of.coverage_factor, 3)
-        ),
-        None => prefixed(answer.power_w, "W", 4),
-    };
+        )
+    });
     let shift = match answer.correction_db {
         db if db.abs() < 0.0005 => "the meter shows it without correction".to_owned(),
         db if db > 0.0 => format!("the meter shows {} dB too little", fixed(db, 3)),
@@ -51,7 +50,8 @@ fn headline(answer: &Answer) -> Headline {
     };
     Headline {
         figure: format!("{} dBm", fixed(answer.power_dbm, 2)),
-        sentence: format!("is the power of the light: {power}; {shift}."),
+        sentence: format!("is the power of the light, {}; {shift}.", prefixed(answer.power_w, "W", 4)),
+        uncertainty,
         copy: format!("{} dBm", answer.power_dbm),
     }
 }
@@ -67,6 +67,10 @@ fn facts(given: &Given, answer: &Answer) -> Vec<Fact> {
     if let Some(of) = &answer.certificate_uncertainty {
         facts.extend(uncertainty(answer, of));
     }
+    facts.extend(answer.ratio_db.map(|ratio_db| {
+        let factor = answer.ratio.map_or_else(String::new, |ratio| significant(ratio, 5));
+        Fact::fixed("Against the other reading", ratio_db, 4, "dB").noted(format!("a factor of {factor}"))
+    }));
     facts.extend(answer.responsivity_set_a_per_w.map(|value| {
         Fact::fixed("Responsivity at the setting", value, 5, "A/W").noted("what the meter divides by")
     }));

@@ -5,6 +5,7 @@ pub(in crate::questions) mod setup;
 pub(in crate::questions) mod shown;
 
 use super::curve::Curve;
+use super::prepared::Prepared;
 use super::shown::Shown;
 use crate::bench::Bench;
 use crate::bench::decision::Threshold as Rule;
@@ -124,6 +125,22 @@ pub fn ask(bench: &Bench) -> Result<Answer, Faults> {
     answer.curves = curves::curves(&setup, &answer);
     answer.shown = shown::shown(&setup, bench, &answer);
     Ok(answer)
+}
+
+/// One of the numbers, made ready; the power itself does without all that stands beside it.
+pub fn prepare(bench: &Bench, of: &'static str) -> Result<Prepared, Faults> {
+    // What is missing is said once, before the trials.
+    Setup::new(bench)?;
+    let power_w = |bench: &Bench| {
+        let setup = Setup::new(bench).ok()?;
+        least_average_power_w(&setup.link(), setup.target).ok()
+    };
+    let value: Box<dyn Fn(&Bench, &[f64]) -> Option<f64>> = match of {
+        "average_power_w" => Box::new(move |bench, _| power_w(bench)),
+        "average_power_dbm" => Box::new(move |bench, _| power_w(bench).map(dbm_from_watt)),
+        _ => return Ok(Prepared::by_numbers(numbers, of)),
+    };
+    Ok(Prepared { certificate: None, value })
 }
 
 /// The numbers that a sweep or a search may follow, without curves or text.

@@ -33,11 +33,13 @@ fn headline(setup: &Setup, answer: &Answer) -> Headline {
                 "of average power at the detector is enough for an error ratio of {}.",
                 scientific(setup.target, 3)
             ),
+            uncertainty: String::new(),
             copy: format!("{dbm} dBm"),
         },
         (because, _) => Headline {
             figure: "No such power".to_owned(),
             sentence: format!("because {}.", because.as_ref().map_or("", |none| none.reason.as_str())),
+            uncertainty: String::new(),
             copy: "no such power".to_owned(),
         },
     }

@@ -126,6 +126,7 @@ pub fn transfer_calibration(text: &str, bench: &Bench, choices: &Tree) -> Result
         coverage_factor: Some(k),
         // Of how much the reference's common error is in each point the table does not keep track: the cautious choice.
         point_correlation: None,
+        scale: None,
         points: points.collect(),
     };
     let history = export::history(&choices, &rows);

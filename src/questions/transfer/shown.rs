@@ -43,6 +43,7 @@ fn headline(transfer: &Transfer) -> Headline {
             brief(k, 3),
             brief(transfer.coverage_probability * 100.0, 5)
         ),
+        uncertainty: String::new(),
         copy: transfer.rows.first().map_or_else(String::new, |row| row.correction_factor.to_string()),
     }
 }

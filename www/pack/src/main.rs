@@ -2,7 +2,7 @@
 //!
 //! ```text
 //! pack bind nodejs|no-modules CORE.wasm FOLDER
-//! pack page TEMPLATE.html STYLE.css CORE.wasm GLUE.js SCRIPT.js PAGE.html
+//! pack page TEMPLATE.html STYLE.css CORE.wasm GLUE.js WORKER.js SCRIPT.js PAGE.html
 //! ```
 
 mod bind;
@@ -18,20 +18,21 @@ fn main() -> Result<()> {
     match words.as_slice() {
         ["bind", "nodejs", wasm, folder] => bind::for_node(Path::new(wasm), Path::new(folder)),
         ["bind", "no-modules", wasm, folder] => bind::for_page(Path::new(wasm), Path::new(folder)),
-        ["page", template, style, core, glue, script, out] => {
+        ["page", template, style, core, glue, worker, script, out] => {
             let packed = page::pack(
                 &text(template)?,
                 &page::Parts {
                     style: text(style)?,
                     core: std::fs::read(core).with_context(|| format!("cannot read {core}"))?,
                     glue: text(glue)?,
+                    worker: text(worker)?,
                     script: text(script)?,
                 },
             )?;
             std::fs::write(out, packed).with_context(|| format!("cannot write {out}"))
         }
         _ => bail!(
-            "pack bind nodejs|no-modules CORE FOLDER, or pack page TEMPLATE STYLE CORE GLUE SCRIPT PAGE"
+            "pack bind nodejs|no-modules CORE FOLDER, or pack page TEMPLATE STYLE CORE GLUE WORKER SCRIPT PAGE"
         ),
     }
 }

@@ -13,13 +13,21 @@ pub struct Parts {
     pub core: Vec<u8>,
     /// The glue that makes the core callable.
     pub glue: String,
+    /// What a worker runs after the glue. The page keeps it as text; a worker obeys the policy of its page.
+    pub worker: String,
     /// The page's own script, one classic script.
     pub script: String,
 }
 
 /// The markers, in the order in which they stand in the template.
-const MARKERS: [&str; 5] =
-    ["<!-- csp -->", "<!-- style -->", "<!-- core -->", "<!-- glue -->", "<!-- script -->"];
+const MARKERS: [&str; 6] = [
+    "<!-- csp -->",
+    "<!-- style -->",
+    "<!-- core -->",
+    "<!-- glue -->",
+    "<!-- worker -->",
+    "<!-- script -->",
+];
 
 /// The policy must hold before anything else is read, so it follows the charset at once.
 const BEFORE_POLICY: &str = "<meta charset=\"utf-8\">";
@@ -27,6 +35,7 @@ const BEFORE_POLICY: &str = "<meta charset=\"utf-8\">";
 /// Fills the template.
 pub fn pack(template: &str, parts: &Parts) -> Result<String> {
     ensure_inline("the glue", &parts.glue, &["</script", "<script", "<!--"])?;
+    ensure_inline("the worker", &parts.worker, &["</script", "<script", "<!--"])?;
     ensure_inline("the script", &parts.script, &["</script", "<script", "<!--"])?;
     ensure_inline("the style", &parts.style, &["</style"])?;
 
@@ -42,6 +51,7 @@ pub fn pack(template: &str, parts: &Parts) -> Result<String> {
             STANDARD.encode(&parts.core)
         ),
         format!("<script id=\"glue\">{}</script>", parts.glue),
+        format!("<script type=\"text/plain\" id=\"worker\">{}</script>", parts.worker),
         format!("<script>{}</script>", parts.script),
     ];
     let mut page = pieces[0].to_owned();
@@ -100,13 +110,14 @@ mod tests {
     use super::*;
 
     const TEMPLATE: &str = "<meta charset=\"utf-8\">\n<!-- csp -->\n<!-- style -->\n<!-- core -->\n\
-                            <!-- glue -->\n<!-- script -->\nend";
+                            <!-- glue -->\n<!-- worker -->\n<!-- script -->\nend";
 
     fn parts() -> Parts {
         Parts {
             style: "p{}".to_owned(),
             core: vec![0, 1, 2],
             glue: "let a;".to_owned(),
+            worker: "b();".to_owned(),
             script: "a=1;".to_owned(),
         }
     }
@@ -123,7 +134,10 @@ mod tests {
         assert!(page.contains(
             "<style>p{}</style>\n<script type=\"application/octet-stream\" id=\"core\">AAEC</script>"
         ));
-        assert!(page.ends_with("<script id=\"glue\">let a;</script>\n<script>a=1;</script>\nend"));
+        assert!(page.ends_with(
+            "<script id=\"glue\">let a;</script>\n<script type=\"text/plain\" id=\"worker\">b();</script>\n\
+             <script>a=1;</script>\nend"
+        ));
     }
 
     #[test]
@@ -138,6 +152,7 @@ mod tests {
         for script in ["'</script>'", "'</SCRIPT '", "'<!--'", "a\r\nb"] {
             assert!(pack(TEMPLATE, &Parts { script: script.to_owned(), ..parts() }).is_err(), "{script}");
             assert!(pack(TEMPLATE, &Parts { glue: script.to_owned(), ..parts() }).is_err(), "{script}");
+            assert!(pack(TEMPLATE, &Parts { worker: script.to_owned(), ..parts() }).is_err(), "{script}");
         }
         assert!(pack(TEMPLATE, &Parts { style: "</style>".to_owned(), ..parts() }).is_err());
     }
