@@ -7,7 +7,7 @@ import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
 import { DOUBTS, doubtsOf, shortly } from "./doubts/text.js";
 import { showDoubts, showOffers } from "./doubts/view.js";
-import { addNotes, controls, fill, firstChoices, form, labelOf, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
+import { addNotes, controls, fill, firstChoices, form, labelOf, openFor, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
@@ -50,6 +50,8 @@ export const asksOf = (/** @type {string} */ name) => questions.find((question) 
 const good = new Map();
 /** What a file could not be read for. @type {string[]} */
 let fileFaults = [];
+/** The question for which boxes were opened last; from then on they are the person's. */
+let opened = "";
 
 /** The store can be written by any page from disk; what is not of our making is left alone. @param {any} found */
 function soundState(found) {
@@ -91,6 +93,7 @@ export function update() {
   showUnderstood(texts, understood);
   showTables(form(), texts, tables, changeChoices);
   showUse(job ? [] : question.fields);
+  if (question.name !== opened) openFor((opened = question.name));
   const ofDoubts = faults.filter(({ pointer }) => under(pointer, DOUBTS));
   showSummary(showFaults(faults.filter((fault) => !ofDoubts.includes(fault)), all, texts));
   showDoubts({ texts, question, numbers: numbersOf(question), usual, faults: ofDoubts, understood, change });

@@ -23,6 +23,9 @@ const ROLES = {
   detector: { says: "which meter", units: [] },
   power: { says: "reading", units: ["dBm", "W", "mW", "µW", "nW", "pW"] },
   time: { says: "time", units: ["s"] },
+  voltage: { says: "bias", units: ["V", "mV"] },
+  gain: { says: "gain", units: ["1"] },
+  excess_noise_factor: { says: "excess noise factor", units: ["1"] },
   ignored: { says: "nothing that is read", units: [] },
 };
 
@@ -31,6 +34,8 @@ const COLUMNS = {
   certificate: ["wavelength", "responsivity", "correction_factor", "deviation", "expanded", "ignored"],
   responsivity: ["wavelength", "responsivity", "ignored"],
   spectrum: ["wavelength", "spectral_power", "ignored"],
+  gains: ["voltage", "gain", "ignored"],
+  noise_factors: ["gain", "excess_noise_factor", "ignored"],
   readings: ["wavelength", "detector", "power", "time", "ignored"],
 };
 

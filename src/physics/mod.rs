@@ -9,14 +9,17 @@
 //! * Decibels are 10 log₁₀ of a ratio of optical powers, also for an extinction ratio.
 
 pub mod avalanche;
+pub mod bias;
 pub mod closed_form;
 pub mod constants;
 pub mod decibel;
 pub mod decision;
+pub mod excess_noise;
 pub mod filter;
 pub mod levels;
 pub mod light;
 pub mod meter;
+pub mod miller;
 pub mod noise;
 pub mod quantum_limit;
 pub mod receiver;

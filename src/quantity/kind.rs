@@ -190,6 +190,13 @@ pub const TEMPERATURE_C: Kind = Kind {
 pub const TEMPERATURE_DIFFERENCE: Kind =
     Kind { unit: "K", style: Style::Plain, units: &[plain("K"), plain("°C"), plain("C")] };
 
+/// A voltage, kept in V.
+pub const VOLTAGE: Kind = Kind { unit: "V", style: Style::Plain, units: &[si("V")] };
+
+/// A change of voltage with temperature, kept in V/K.
+pub const VOLTAGE_PER_KELVIN: Kind =
+    Kind { unit: "V/K", style: Style::Plain, units: &[si("V/K"), si("V/°C"), si("V/C")] };
+
 /// A difference of optical powers, kept in W.
 pub const POWER_DIFFERENCE: Kind = Kind { unit: "W", style: Style::Prefixed, units: &[si("W")] };
 

@@ -1,5 +1,6 @@
 //! What someone came to find out: one question a file, each a pure function of the bench.
 
+pub mod avalanche_bias;
 pub mod curve;
 pub mod log;
 pub mod needs;
@@ -42,7 +43,21 @@ pub const QUESTIONS: &[Question] = &[
     Question {
         name: "sensitivity",
         asks: "How little light is enough?",
-        fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
+        fields: &[
+            "/source",
+            "/path",
+            "/detector/responsivity",
+            "/detector/dark_current_bulk_a",
+            "/detector/dark_current_surface_a",
+            "/detector/bandwidth_hz",
+            "/detector/avalanche/gain",
+            "/detector/avalanche/ionisation_ratio",
+            "/detector/avalanche/excess_noise",
+            "/detector/avalanche/gain_bandwidth_hz",
+            "/amplifier",
+            "/decision",
+            "/surroundings",
+        ],
         ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
         numbers: sensitivity::numbers,
         uncertain: &[
@@ -71,6 +86,15 @@ pub const QUESTIONS: &[Question] = &[
         ],
         prepare: reading::prepare,
     },
+    Question {
+        name: "avalanche_bias",
+        asks: "Where should the avalanche bias sit?",
+        fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
+        ask: |bench| avalanche_bias::ask(bench).map(|answer| Answer::AvalancheBias(Box::new(answer))),
+        numbers: avalanche_bias::numbers,
+        uncertain: &[("bias_v", "the bias"), ("best_gain", "the best gain")],
+        prepare: avalanche_bias::prepare,
+    },
 ];
 
 /// An answer to any question.
@@ -81,6 +105,8 @@ pub enum Answer {
     Sensitivity(Box<sensitivity::Answer>),
     /// What a reading is worth.
     Reading(Box<reading::Answer>),
+    /// Where the avalanche bias should sit.
+    AvalancheBias(Box<avalanche_bias::Answer>),
 }
 
 impl Answer {
@@ -89,6 +115,7 @@ impl Answer {
         match self {
             Answer::Sensitivity(answer) => (&mut answer.shown, &mut answer.curves),
             Answer::Reading(answer) => (&mut answer.shown, &mut answer.curves),
+            Answer::AvalancheBias(answer) => (&mut answer.shown, &mut answer.curves),
         }
     }
 }

@@ -50,6 +50,8 @@ pub fn unit_of(name: &str) -> &'static str {
         ("_nm", "nm"),
         ("_ohm", "Ω"),
         ("_v_per_k", "V/K"),
+        ("_per_v", "1/V"),
+        ("_per_k", "1/K"),
         ("_w", "W"),
         ("_a", "A"),
         ("_v", "V"),

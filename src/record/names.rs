@@ -80,6 +80,12 @@ named! {
         Range = "range",
         /// Whether the meter trusts its own reading.
         Status = "status",
+        /// A voltage, such as the bias.
+        Voltage = "voltage",
+        /// The gain of an avalanche.
+        Gain = "gain",
+        /// The excess noise factor of an avalanche.
+        NoiseFactor = "excess_noise_factor",
         /// Nothing that is read.
         Ignored = "ignored",
     }
@@ -132,6 +138,10 @@ named! {
         Minute = "min",
         /// Hours.
         Hour = "h",
+        /// Volts.
+        Volt = "V",
+        /// Millivolts.
+        Millivolt = "mV",
     }
 }
 
@@ -193,13 +203,15 @@ impl Role {
                 &[Unit::Watt, Unit::Milliwatt, Unit::Microwatt, Unit::Nanowatt, Unit::Picowatt, Unit::Dbm]
             }
             Role::Time => &[Unit::Second, Unit::Millisecond, Unit::Minute, Unit::Hour],
+            Role::Voltage => &[Unit::Volt, Unit::Millivolt],
+            Role::Gain | Role::NoiseFactor => &[Unit::One],
             Role::Detector | Role::Date | Role::PowerUnit | Role::Range | Role::Status | Role::Ignored => &[],
         }
     }
 }
 
 impl Unit {
-    /// Recognises a unit of power, of power per nm or of time as it is written in tables; `None` for anything else.
+    /// Recognises a unit of power, of power per nm, of time or of voltage as it is written in tables; `None` for anything else.
     pub(super) fn written_of_power(text: &str) -> Option<Unit> {
         Some(match plain(text)?.as_str() {
             "W" => Unit::Watt,
@@ -217,16 +229,22 @@ impl Unit {
             "ms" => Unit::Millisecond,
             "min" => Unit::Minute,
             "h" | "hours" => Unit::Hour,
+            "V" | "volt" | "Volt" | "volts" | "Volts" => Unit::Volt,
+            "mV" => Unit::Millivolt,
             _ => return None,
         })
     }
 
-    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s; 0 for levels and for what is
+    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s, V; 0 for levels and for what is
     /// no power of ten apart.
     pub(super) fn power_of_ten(self) -> i32 {
         match self {
             Unit::Micrometre => 3,
-            Unit::MilliamperePerWatt | Unit::Milliwatt | Unit::MilliwattPerNm | Unit::Millisecond => -3,
+            Unit::MilliamperePerWatt
+            | Unit::Milliwatt
+            | Unit::MilliwattPerNm
+            | Unit::Millisecond
+            | Unit::Millivolt => -3,
             Unit::Microwatt | Unit::MicrowattPerNm => -6,
             Unit::Nanowatt | Unit::NanowattPerNm => -9,
             Unit::Picowatt => -12,

@@ -1,5 +1,6 @@
 //! What the cases in `tests/published/` may ask for, by name.
 
+mod bias;
 mod door;
 mod light;
 mod log;
@@ -11,5 +12,5 @@ use crate::support::cases::Computation;
 
 /// Everything that a case may ask for.
 pub fn all() -> Vec<(&'static str, Computation)> {
-    [door::ALL, light::ALL, log::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
+    [bias::ALL, door::ALL, light::ALL, log::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
 }
