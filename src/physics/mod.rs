@@ -11,9 +11,12 @@
 pub mod avalanche;
 pub mod closed_form;
 pub mod constants;
+pub mod counting;
 pub mod decibel;
 pub mod decision;
 pub mod filter;
+pub mod gain_distribution;
+pub mod gain_transform;
 pub mod levels;
 pub mod light;
 pub mod meter;
