@@ -103,7 +103,7 @@ impl Gain {
     /// Second and third raw moments of G.
     ///
     /// ```text
-    /// κ₂ = M²A,   κ₃ = 3A²M⁵ + A(1−2a)M⁴      A = (M−1)(1 + k(M−1))/M²
+    /// κ₂ = M³A,   κ₃ = 3A²M⁵ + A(1−2a)M⁴      A = (M−1)(1 + k(M−1))/M²
     /// ```
     ///
     /// Source: derivatives of the implicit equation at s = 0.
@@ -111,7 +111,7 @@ impl Gain {
         let (m, k) = (self.mean, self.ionisation_ratio);
         let a = (1.0 - k) * (m - 1.0) / m;
         let big_a = (m - 1.0) * (1.0 + k * (m - 1.0)) / (m * m);
-        let second = m * m * big_a;
+        let second = big_a * m * m * m;
         let third = 3.0 * big_a * big_a * m.powi(5) + big_a * (1.0 - 2.0 * a) * m.powi(4);
         (second + m * m, third + 3.0 * m * second + m * m * m)
     }

@@ -9,7 +9,7 @@ use crate::numeric::root::root;
 use crate::statistics::normal::upper_tail_quantile;
 
 /// The most average power that is looked at, in W: far beyond what any detector survives.
-const MOST_POWER_W: f64 = 1e3;
+pub(super) const MOST_POWER_W: f64 = 1e3;
 
 /// How bits become levels.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -140,7 +140,7 @@ pub fn least_average_power_w(link: &Link, target_error_ratio: f64) -> Result<f64
 }
 
 /// A power near the answer, from the closed form with a dark zero and the penalties of extinction and of four levels.
-fn guess_w(link: &Link, target_error_ratio: f64) -> f64 {
+pub(super) fn guess_w(link: &Link, target_error_ratio: f64) -> f64 {
     let receiver = &link.receiver;
     let eyes = match link.format {
         Format::Nrz => 1.0,

@@ -31,7 +31,7 @@ const REACH: f64 = 8.5;
 const ROOT_TWO_PI: f64 = 2.506_628_274_631_000_7;
 
 /// How far two trapezoids may differ; their mean is right to about the square of it.
-const AGREEMENT: f64 = 1e-5;
+const AGREEMENT: f64 = 1e-6;
 
 /// Halvings after which the last sum is taken.
 const MOST_HALVINGS: u32 = 9;

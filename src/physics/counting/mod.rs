@@ -8,7 +8,7 @@
 //! E[e^{sX}] = exp( N (g(s) − 1) + S (e^s − 1) + σ² s²/2 )
 //! ```
 //!
-//! by integration along a contour: see [`contour`](self). What no primary starts is a Gaussian (or, with S, a count of its own) and is taken
+//! by integration along a contour: see `contour.rs`. What no primary starts is a Gaussian (or, with S, a count of its own) and is taken
 //! apart first, because for small N it has a saddle of its own.
 //!
 //! Without circuit noise counts are whole, and the threshold is too: a count at or above it reads as one.
@@ -73,7 +73,7 @@ impl Count {
         self.noise < NO_NOISE
     }
 
-    /// The chances on both sides of a threshold in electrons, to about 1e-8 of the smaller one.
+    /// The chances on both sides of a threshold in electrons, to better than 1e-7 of the smaller one.
     pub fn chances(&self, threshold: f64) -> Chances {
         let (second, third) = self.gain.raw_moments();
         let variance = self.primaries * second + self.unmultiplied + self.noise * self.noise;
@@ -177,7 +177,7 @@ fn joined(some: Chances, none: Chances, ln_share: f64) -> Chances {
 }
 
 /// The sum of two densities by their logarithms, with the slope of its logarithm.
-fn mixed(one: (f64, f64), other: (f64, f64)) -> (f64, f64) {
+pub(super) fn mixed(one: (f64, f64), other: (f64, f64)) -> (f64, f64) {
     let (more, less) = if one.0 >= other.0 { (one, other) } else { (other, one) };
     if less.0 == f64::NEG_INFINITY {
         return more;

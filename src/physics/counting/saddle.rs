@@ -120,13 +120,14 @@ impl Compound {
                 v += step;
                 break;
             }
-            let next = v + step;
+            // Not farther than doubling at once, as long as one side is open.
+            let next = (v + step).clamp(v - 1.0 - v.abs(), v + 2.0 + v.abs());
             v = if slope > 0.0 && low < next && next < high {
                 next
             } else if low == f64::NEG_INFINITY {
-                if high > 0.0 { -high.min(1.0) } else { 2.0 * high }
+                v - 1.0 - v.abs()
             } else if high == f64::INFINITY {
-                if low < 0.0 { -0.5 * low } else { 2.0 * low + 1.0 }
+                v + 1.0 + v.abs()
             } else {
                 0.5 * (low + high)
             };

@@ -1,0 +1,214 @@
+//! Telling counts apart: thresholds, and the bit error ratio that remains, with the statistics that counts really have.
+//!
+//! The counterpart of [`decision`](super::decision), with the same codes. The threshold of the least error ratio is where the densities of
+//! what it parts are equal. With the same noise at all levels there is one such place: given the number of primary electrons the
+//! gain's distribution has a monotone likelihood ratio, as has the Poisson number itself, and adding noise keeps it so (S. Karlin,
+//! Total Positivity, 1968, chapter 3). Intensity noise differs from level to level; where single electrons show as well, neighbouring
+//! places are compared.
+
+use super::counting::{Chances, Count, mixed};
+use super::decision::{bits, sign};
+use crate::numeric::root::root;
+
+/// Where the thresholds are put.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Rule {
+    /// Where the bit error ratio is least.
+    Optimum,
+    /// Halfway between neighbouring means.
+    Midpoint,
+}
+
+/// Thresholds, and what they achieve.
+#[derive(Clone, Debug, PartialEq)]
+pub struct CountDecision {
+    /// Share of bits that are read wrongly.
+    pub error_ratio: f64,
+    /// Thresholds in electrons, lowest first; whole numbers where counts are whole. A count at the threshold is above it.
+    pub thresholds: Vec<f64>,
+}
+
+/// Decides between two levels (NRZ) or four (PAM4).
+///
+/// * `levels` – lowest mean first
+/// * `rule` – where the thresholds are put; the best of four levels are sought between their neighbours, of two anywhere
+///
+/// # Example
+///
+/// ```
+/// use leastlight::physics::counting::Count;
+/// use leastlight::physics::exact_decision::{Rule, decide};
+/// use leastlight::physics::gain_transform::Gain;
+///
+/// // Ideal counting: only an empty one is misread, ½e^(−20).
+/// let count = |primaries| Count { primaries, gain: Gain::UNIT, unmultiplied: 0.0, noise: 0.0 };
+/// let decision = decide(&[count(0.0), count(20.0)], Rule::Optimum);
+/// assert!((decision.error_ratio / (0.5 * (-20f64).exp()) - 1.0).abs() < 1e-7);
+/// assert_eq!(decision.thresholds, [1.0]);
+/// ```
+pub fn decide(levels: &[Count], rule: Rule) -> CountDecision {
+    debug_assert!(matches!(levels.len(), 2 | 4));
+    let eye = |below: usize| {
+        let parted = Parted { levels, below };
+        match rule {
+            Rule::Optimum => parted.best(),
+            Rule::Midpoint => parted.at(parted.middle()),
+        }
+    };
+    let places: Vec<Place> = (1..levels.len()).map(eye).collect();
+    CountDecision {
+        error_ratio: places.iter().map(|place| place.wrong_bits).sum::<f64>() / bits(levels),
+        thresholds: places.iter().map(|place| place.threshold).collect(),
+    }
+}
+
+/// Bit error ratio with the thresholds given, in electrons, lowest first.
+pub fn error_ratio_at(levels: &[Count], thresholds: &[f64]) -> f64 {
+    let wrong = |(index, &threshold): (usize, &f64)| Parted { levels, below: index + 1 }.at(threshold).wrong_bits;
+    thresholds.iter().enumerate().map(wrong).sum::<f64>() / bits(levels)
+}
+
+/// Levels, parted by the threshold that has `below` of them beneath it.
+struct Parted<'l> {
+    levels: &'l [Count],
+    below: usize,
+}
+
+/// A threshold with what it does.
+#[derive(Clone, Copy)]
+struct Place {
+    threshold: f64,
+    /// Bits read wrongly on its account, summed over the levels.
+    wrong_bits: f64,
+    /// Logarithm of the densities that lose by a higher threshold over those that gain, and its derivative.
+    balance: f64,
+    slope: f64,
+}
+
+/// Balance at which a threshold is the best one: the error ratio is flat there, to an eighth of its square.
+const BALANCED: f64 = 1e-4;
+
+/// Steps towards it. Steps of densities between whole electrons may need halving all the way.
+const MOST_STEPS: usize = 60;
+
+/// Noise in electrons below which densities rise and fall with every electron.
+const ELECTRONS_SHOW: f64 = 1.0;
+
+impl Parted<'_> {
+    /// The neighbours of the threshold.
+    fn neighbours(&self) -> Option<(&Count, &Count)> {
+        Some((self.levels.get(self.below.checked_sub(1)?)?, self.levels.get(self.below)?))
+    }
+
+    fn middle(&self) -> f64 {
+        self.neighbours().map_or(0.0, |(lower, upper)| 0.5 * (lower.mean() + upper.mean()))
+    }
+
+    fn at(&self, threshold: f64) -> Place {
+        let chances: Vec<Chances> = self.levels.iter().map(|level| level.chances(threshold)).collect();
+        let wrong = |(index, chances): (usize, &Chances)| {
+            let sign = sign(self.below, index);
+            if index < self.below { -sign * chances.above } else { sign * chances.below }
+        };
+        let (balance, slope) = self.balance(chances.iter().map(|one| (one.ln_density, one.slope)));
+        Place { threshold, wrong_bits: chances.iter().enumerate().map(wrong).sum(), balance, slope }
+    }
+
+    /// From the logarithms of the levels' densities with their slopes.
+    fn balance(&self, densities: impl Iterator<Item = (f64, f64)>) -> (f64, f64) {
+        let nothing = (f64::NEG_INFINITY, 0.0);
+        let (mut losing, mut gaining) = (nothing, nothing);
+        for (index, density) in densities.enumerate() {
+            let side = if sign(self.below, index) > 0.0 { &mut losing } else { &mut gaining };
+            *side = mixed(*side, density);
+        }
+        (losing.0 - gaining.0, losing.1 - gaining.1)
+    }
+
+    fn rough_balance(&self, threshold: f64) -> f64 {
+        let (balance, _) = self.balance(self.levels.iter().map(|level| level.rough_density(threshold)));
+        // A density may be none at all, even both.
+        if balance.is_nan() { 0.0 } else { balance.clamp(-1e6, 1e6) }
+    }
+
+    /// The threshold of the fewest wrong bits: found in approximate densities, mended with exact ones.
+    fn best(&self) -> Place {
+        let Some(rough) = self.rough() else {
+            return self.at(self.middle());
+        };
+        if self.levels.iter().all(Count::is_whole) {
+            return self.least_nearby(self.at(rough.round()));
+        }
+        let place = self.balanced(rough);
+        let shows = self.levels.iter().any(|level| level.noise < ELECTRONS_SHOW);
+        if shows { self.least_nearby(place) } else { place }
+    }
+
+    fn rough(&self) -> Option<f64> {
+        let (lower, upper) = self.neighbours()?;
+        let (mut low, mut high) = (lower.mean(), upper.mean());
+        // Levels deep in noise of different width may be parted best beyond their means.
+        if self.levels.len() == 2 {
+            let spread = lower.variance().max(upper.variance()).sqrt();
+            let mut step = spread;
+            for _ in 0..8 {
+                if self.rough_balance(low) > 0.0 {
+                    low -= step;
+                } else if self.rough_balance(high) < 0.0 {
+                    high += step;
+                } else {
+                    break;
+                }
+                step *= 2.0;
+            }
+        }
+        let length = high - low;
+        let share = root(|share| self.rough_balance(low + share * length), 0.0, 1.0, 1e-6).ok()?;
+        Some(low + share * length)
+    }
+
+    /// Newton's method for the balance, between the places that are known to be too low and too high.
+    fn balanced(&self, start: f64) -> Place {
+        let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
+        let mut place = self.at(start);
+        for _ in 0..MOST_STEPS {
+            if !(place.balance.abs() > BALANCED) {
+                break;
+            }
+            if place.balance < 0.0 {
+                low = place.threshold;
+            } else {
+                high = place.threshold;
+            }
+            let widest = self.levels.iter().map(|level| level.variance()).fold(1.0, f64::max).sqrt();
+            let step = (-place.balance / place.slope).clamp(-widest, widest);
+            let next = place.threshold + step;
+            let next = match (low < next && next < high, low.is_finite() && high.is_finite()) {
+                (true, _) if place.slope > 0.0 => next,
+                (_, true) => 0.5 * (low + high),
+                _ if low.is_finite() => low + 0.5 * widest,
+                _ => high - 0.5 * widest,
+            };
+            if next == place.threshold || (high - low) < 1e-9 * high.abs() {
+                break;
+            }
+            place = self.at(next);
+        }
+        place
+    }
+
+    /// The best of the places that are whole electrons away, as long as one is better than the last.
+    fn least_nearby(&self, start: Place) -> Place {
+        let mut best = start;
+        for step in [1.0, -1.0] {
+            for _ in 0..MOST_STEPS {
+                let next = self.at(best.threshold + step);
+                if next.wrong_bits.is_nan() || next.wrong_bits >= best.wrong_bits {
+                    break;
+                }
+                best = next;
+            }
+        }
+        best
+    }
+}
