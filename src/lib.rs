@@ -16,5 +16,6 @@ pub mod record;
 pub mod statistics;
 pub mod tree;
 pub mod typed;
+pub mod uncertainty;
 #[cfg(target_arch = "wasm32")]
 pub mod wasm;
