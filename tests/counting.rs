@@ -35,7 +35,8 @@ fn summed(chances: &[f64], noise: f64, threshold: f64) -> (f64, f64, f64) {
         if noise > 0.0 {
             below += chance * upper_tail(up / noise);
             above += chance * upper_tail(-up / noise);
-            density += chance * (-0.5 * (up / noise).powi(2)).exp() / (noise * (2.0 * std::f64::consts::PI).sqrt());
+            density +=
+                chance * (-0.5 * (up / noise).powi(2)).exp() / (noise * (2.0 * std::f64::consts::PI).sqrt());
         } else if up < 0.0 {
             below += chance;
         } else {
@@ -73,7 +74,9 @@ fn contour_and_sum_agree_over_a_grid_of_receivers() {
                                     return;
                                 }
                                 let off = (found / expected).ln().abs();
-                                let what = format!("{name} {found:e} for {expected:e} k {k} M {gain} N {primaries} S {unmultiplied} σ {noise} D {threshold}");
+                                let what = format!(
+                                    "{name} {found:e} for {expected:e} k {k} M {gain} N {primaries} S {unmultiplied} σ {noise} D {threshold}"
+                                );
                                 compared += 1;
                                 rarest = rarest.min(expected);
                                 if !(off <= allowed) {

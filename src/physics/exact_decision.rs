@@ -64,7 +64,8 @@ pub fn decide(levels: &[Count], rule: Rule) -> CountDecision {
 
 /// Bit error ratio with the thresholds given, in electrons, lowest first.
 pub fn error_ratio_at(levels: &[Count], thresholds: &[f64]) -> f64 {
-    let wrong = |(index, &threshold): (usize, &f64)| Parted { levels, below: index + 1 }.at(threshold).wrong_bits;
+    let wrong =
+        |(index, &threshold): (usize, &f64)| Parted { levels, below: index + 1 }.at(threshold).wrong_bits;
     thresholds.iter().enumerate().map(wrong).sum::<f64>() / bits(levels)
 }
 

@@ -142,8 +142,7 @@ fn sensitivity(given: &mut Inputs) -> Result<Outputs, String> {
 fn webb_mcintyre_conradi(given: &mut Inputs) -> Result<Outputs, String> {
     let (gain, k) = avalanche(given)?;
     let primaries = given.number("primaries")?;
-    let density =
-        |m: f64| webb_mcintyre_conradi::density(primaries, gain, excess_noise_factor(gain, k), m);
+    let density = |m: f64| webb_mcintyre_conradi::density(primaries, gain, excess_noise_factor(gain, k), m);
     let densities: Vec<f64> = given.numbers("electrons")?.into_iter().map(density).collect();
     Ok([("densities", densities.into())].into())
 }

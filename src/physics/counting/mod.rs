@@ -126,7 +126,12 @@ impl Count {
         let primaries = if unit { self.primaries + self.unmultiplied } else { self.primaries };
         let unmultiplied = if unit { 0.0 } else { self.unmultiplied };
         // So few that their logarithm has no digits left are none.
-        (primaries > 1e-290).then_some(Compound { primaries, unmultiplied, noise: self.noise, gain: self.gain })
+        (primaries > 1e-290).then_some(Compound {
+            primaries,
+            unmultiplied,
+            noise: self.noise,
+            gain: self.gain,
+        })
     }
 
     /// What is counted while no primary electron comes.

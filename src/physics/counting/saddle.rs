@@ -75,7 +75,16 @@ impl Compound {
         let f3 = (1.0 + b) * x3 - 3.0 * bb * x1 * x2 + bb * (1.0 + 2.0 * b) * x1 * x1 * x1;
         let g1 = g * (1.0 + c * g);
         let k0 = n * real.g_less_1 + libm::log(-libm::expm1(-x)) + self.steady(s);
-        ByV { s, u: 1.0 - epsilon * g, u1: -epsilon * g1, u2: -epsilon * g1 * (1.0 + 2.0 * c * g), f1, f2, f3, k0 }
+        ByV {
+            s,
+            u: 1.0 - epsilon * g,
+            u1: -epsilon * g1,
+            u2: -epsilon * g1 * (1.0 + 2.0 * c * g),
+            f1,
+            f2,
+            f3,
+            k0,
+        }
     }
 
     /// S (e^s − 1) + σ² s²/2.
