@@ -3,11 +3,12 @@
 //! The counterpart of [`decision`](super::decision), with the same codes. The threshold of the least error ratio is where the densities of
 //! what it parts are equal. With the same noise at all levels there is one such place: given the number of primary electrons the
 //! gain's distribution has a monotone likelihood ratio, as has the Poisson number itself, and adding noise keeps it so (S. Karlin,
-//! Total Positivity, 1968, chapter 3). Intensity noise differs from level to level; where single electrons show as well, neighbouring
-//! places are compared.
+//! Total Positivity, 1968, chapter 3). Intensity noise differs from level to level; there, and where
+//! single electrons stand apart, neighbouring places are compared.
 
 use super::counting::{Chances, Count, mixed};
 use super::decision::{bits, sign};
+use crate::numeric::minimum::minimum;
 use crate::numeric::root::root;
 
 /// Where the thresholds are put.
@@ -87,13 +88,19 @@ struct Place {
 }
 
 /// Balance at which a threshold is the best one: the error ratio is flat there, to an eighth of its square.
-const BALANCED: f64 = 1e-4;
+const BALANCED: f64 = 1e-3;
 
-/// Steps towards it. Steps of densities between whole electrons may need halving all the way.
+/// Electrons within which a threshold is found.
+const NARROW: f64 = 1e-5;
+
+/// Steps towards it.
 const MOST_STEPS: usize = 60;
 
-/// Noise in electrons below which densities rise and fall with every electron.
-const ELECTRONS_SHOW: f64 = 1.0;
+/// Logarithm of a ratio of densities that is nothing.
+const NOTHING_BESIDE: f64 = 40.0;
+
+/// Noise in electrons below which counts stand apart as lumps.
+const ELECTRONS_SHOW: f64 = 0.5;
 
 impl Parted<'_> {
     /// The neighbours of the threshold.
@@ -106,13 +113,31 @@ impl Parted<'_> {
     }
 
     fn at(&self, threshold: f64) -> Place {
-        let chances: Vec<Chances> = self.levels.iter().map(|level| level.chances(threshold)).collect();
+        let chances: Vec<Chances> = match self.levels {
+            [_, _] => self.levels.iter().map(|level| level.chances(threshold)).collect(),
+            _ => self.chances_of_four(threshold),
+        };
         let wrong = |(index, chances): (usize, &Chances)| {
             let sign = sign(self.below, index);
             if index < self.below { -sign * chances.above } else { sign * chances.below }
         };
         let (balance, slope) = self.balance(chances.iter().map(|one| (one.ln_density, one.slope)));
         Place { threshold, wrong_bits: chances.iter().enumerate().map(wrong).sum(), balance, slope }
+    }
+
+    /// Levels beyond the neighbours hardly ever come this far; it is seen at little cost.
+    fn chances_of_four(&self, threshold: f64) -> Vec<Chances> {
+        let rough = |level: &Count| level.rough_density(threshold).0;
+        let near = self.neighbours().map_or(0.0, |(lower, upper)| rough(lower).min(rough(upper)));
+        let chances = |(index, level): (usize, &Count)| {
+            let beyond = index + 1 < self.below || index > self.below;
+            if beyond && rough(level) < near - NOTHING_BESIDE {
+                let (below, above) = if index < self.below { (1.0, 0.0) } else { (0.0, 1.0) };
+                return Chances { below, above, ln_density: f64::NEG_INFINITY, slope: 0.0 };
+            }
+            level.chances(threshold)
+        };
+        self.levels.iter().enumerate().map(chances).collect()
     }
 
     /// From the logarithms of the levels' densities with their slopes.
@@ -134,27 +159,31 @@ impl Parted<'_> {
 
     /// The threshold of the fewest wrong bits: found in approximate densities, mended with exact ones.
     fn best(&self) -> Place {
-        let Some(rough) = self.rough() else {
-            return self.at(self.middle());
-        };
+        let rough = self.rough().unwrap_or_else(|| self.middle());
         if self.levels.iter().all(Count::is_whole) {
-            return self.least_nearby(self.at(rough.round()));
+            return self.least_on_grid(self.at(rough.round()));
         }
-        let place = self.balanced(rough);
-        let shows = self.levels.iter().any(|level| level.noise < ELECTRONS_SHOW);
-        if shows { self.least_nearby(place) } else { place }
+        if self.levels.iter().any(|level| level.noise < ELECTRONS_SHOW) {
+            // Between lumps there is no density to go by, but from half to half the wrong bits have one valley.
+            let near = self.least_on_grid(self.at(rough.floor() + 0.5));
+            let wrong = |shift: f64| self.at(near.threshold + shift).wrong_bits;
+            let least = self.at(near.threshold + minimum(wrong, -1.0, 1.0, 0.01).at);
+            return if least.wrong_bits < near.wrong_bits { least } else { near };
+        }
+        self.balanced(self.at(rough))
     }
 
+    /// Where approximate densities balance; an end of what was searched where they do not.
     fn rough(&self) -> Option<f64> {
         let (lower, upper) = self.neighbours()?;
         let (mut low, mut high) = (lower.mean(), upper.mean());
-        // Levels deep in noise of different width may be parted best beyond their means.
+        // Two levels deep in noise of different width may be parted best beyond their means, but not where neither comes.
         if self.levels.len() == 2 {
-            let spread = lower.variance().max(upper.variance()).sqrt();
-            let mut step = spread;
+            let lowest = 0.5 - 30.0 * lower.noise.max(upper.noise);
+            let mut step = lower.variance().max(upper.variance()).sqrt();
             for _ in 0..8 {
-                if self.rough_balance(low) > 0.0 {
-                    low -= step;
+                if self.rough_balance(low) > 0.0 && low > lowest {
+                    low = (low - step).max(lowest);
                 } else if self.rough_balance(high) < 0.0 {
                     high += step;
                 } else {
@@ -163,16 +192,24 @@ impl Parted<'_> {
                 step *= 2.0;
             }
         }
+        if self.rough_balance(low) > 0.0 {
+            return Some(low);
+        }
+        if self.rough_balance(high) < 0.0 {
+            return Some(high);
+        }
         let length = high - low;
-        let share = root(|share| self.rough_balance(low + share * length), 0.0, 1.0, 1e-6).ok()?;
+        let share = root(|share| self.rough_balance(low + share * length), 0.0, 1.0, 1e-4).ok()?;
         Some(low + share * length)
     }
 
     /// Newton's method for the balance, between the places that are known to be too low and too high.
-    fn balanced(&self, start: f64) -> Place {
+    fn balanced(&self, start: Place) -> Place {
         let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
-        let mut place = self.at(start);
+        let widest = self.levels.iter().map(Count::variance).fold(1.0, f64::max).sqrt();
+        let mut place = start;
         for _ in 0..MOST_STEPS {
+            // No number where all densities are below the smallest: then nothing is wrong on any side.
             if !(place.balance.abs() > BALANCED) {
                 break;
             }
@@ -181,7 +218,6 @@ impl Parted<'_> {
             } else {
                 high = place.threshold;
             }
-            let widest = self.levels.iter().map(|level| level.variance()).fold(1.0, f64::max).sqrt();
             let step = (-place.balance / place.slope).clamp(-widest, widest);
             let next = place.threshold + step;
             let next = match (low < next && next < high, low.is_finite() && high.is_finite()) {
@@ -190,7 +226,7 @@ impl Parted<'_> {
                 _ if low.is_finite() => low + 0.5 * widest,
                 _ => high - 0.5 * widest,
             };
-            if next == place.threshold || (high - low) < 1e-9 * high.abs() {
+            if next == place.threshold || high - low < NARROW {
                 break;
             }
             place = self.at(next);
@@ -198,16 +234,21 @@ impl Parted<'_> {
         place
     }
 
-    /// The best of the places that are whole electrons away, as long as one is better than the last.
-    fn least_nearby(&self, start: Place) -> Place {
+    /// The least of the places that are whole electrons away, by steps that double while they help.
+    fn least_on_grid(&self, start: Place) -> Place {
         let mut best = start;
-        for step in [1.0, -1.0] {
+        for side in [1.0, -1.0] {
+            let mut step = side;
             for _ in 0..MOST_STEPS {
                 let next = self.at(best.threshold + step);
-                if next.wrong_bits.is_nan() || next.wrong_bits >= best.wrong_bits {
+                if next.wrong_bits < best.wrong_bits {
+                    best = next;
+                    step *= 2.0;
+                } else if step == side {
                     break;
+                } else {
+                    step = side;
                 }
-                best = next;
             }
         }
         best

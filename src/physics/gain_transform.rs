@@ -175,7 +175,7 @@ impl Gain {
                 break;
             }
             // The error after a step is of the third order in it.
-            if step.abs() <= 1e-5 * place.v.abs() {
+            if step.abs() <= 1e-4 * place.v.abs() {
                 return Some(Place { s, ..place });
             }
         }

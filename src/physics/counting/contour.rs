@@ -21,8 +21,8 @@ use crate::physics::gain_transform::Place;
 use crate::statistics::normal::upper_tail;
 use core::f64::consts::PI;
 
-/// Noise in electrons above which whole counts do not show: at y = π, half of a period, e^{−σ²y²/2} is 5e-20.
-const SMOOTH: f64 = 3.0;
+/// Noise in electrons above which whole counts do not show: at y = π, half of a period, e^{−σ²y²/2} is 3e-9.
+const SMOOTH: f64 = 2.0;
 
 /// Noises that are counted on each side of a threshold: their tail is 1e-17 of a chance.
 const REACH: f64 = 8.5;
@@ -31,13 +31,19 @@ const REACH: f64 = 8.5;
 const ROOT_TWO_PI: f64 = 2.506_628_274_631_000_7;
 
 /// How far two trapezoids may differ; their mean is right to about the square of it.
-const AGREEMENT: f64 = 1e-6;
+const AGREEMENT: f64 = 3e-5;
+
+/// The same for whole counts, where a period may hold more than a smooth bell.
+const WHOLE_AGREEMENT: f64 = 1e-6;
 
 /// Halvings after which the last sum is taken.
 const MOST_HALVINGS: u32 = 9;
 
 /// Where e^{−…} is nothing beside the middle of the integrand.
 const NOTHING: f64 = -42.0;
+
+/// Logarithm of a chance below the smallest number.
+const BEYOND: f64 = -760.0;
 
 /// Nodes after which a sum is taken as it is.
 const MOST_NODES: u32 = 20_000;
@@ -46,15 +52,22 @@ const MOST_NODES: u32 = 20_000;
 pub fn crossed(count: &Compound, threshold: f64) -> Chances {
     // A count of at least n is one above n − ½.
     let threshold = if count.noise < NO_NOISE { threshold.ceil() - 0.5 } else { threshold };
+    let mass = count.mass();
+    let far_above = threshold > count.primaries / mass * count.gain.mean() + count.unmultiplied;
+    let (below, above) = if far_above { (mass, 0.0) } else { (0.0, mass) };
     let Some(saddle) = count.saddle(threshold) else {
-        // At or below the least count there is.
-        return Chances { below: 0.0, above: count.mass(), ln_density: f64::NEG_INFINITY, slope: 0.0 };
+        // At or below the least count there is, or beyond all numbers.
+        return Chances { below, above, ln_density: f64::NEG_INFINITY, slope: 0.0 };
     };
+    let ln_size = saddle.k0 - saddle.s * threshold;
+    if ln_size < BEYOND {
+        let ln_density = ln_size - libm::log(ROOT_TWO_PI) - 0.5 * libm::log(saddle.k2);
+        return Chances { below, above, ln_density, slope: -saddle.s };
+    }
     let line = Line::new(count, threshold, saddle);
     let kernel = Kernel::new(count, threshold, line.start.s);
     let [tail, density, falling] = line.integral(&kernel);
-    let (size, mass) = (libm::exp(line.ln_size), count.mass());
-    let tail = size * tail;
+    let tail = libm::exp(line.ln_size) * tail;
     let (below, above) = if line.start.s > 0.0 { (mass - tail, tail) } else { (-tail, mass + tail) };
     Chances {
         below: below.clamp(0.0, mass),
@@ -81,6 +94,8 @@ struct Line<'c> {
     most_right: f64,
     /// The scale about the start on which nodes are placed.
     scale: f64,
+    /// The distance of nodes to begin with.
+    step: f64,
 }
 
 impl Line<'_> {
@@ -93,10 +108,12 @@ impl Line<'_> {
         let most_right = (count.saddle_without_primaries(threshold) - start.s).max(0.0);
         // A way to the right that is shorter than the saddle is wide must not be turned into sharply.
         let beta = (start.k3 / (6.0 * start.k2)).min(most_right * start.k2).max(0.0);
-        let wide = 1.6 / start.k2.sqrt();
+        // Far from the pole of 1/s the grading may be coarse.
+        let width = 1.0 / start.k2.sqrt();
+        let (wide, step) = if start.s.abs() > 2.0 * width { (3.0 * width, 0.3) } else { (1.6 * width, 0.3) };
         let scale = if beta > 0.0 { wide.min(0.8 * (most_right / beta).sqrt()) } else { wide };
         let scale = if is_whole(count) { scale.min(1.0) } else { scale };
-        Line { count, threshold, start, ln_size, beta, most_right, scale }
+        Line { count, threshold, start, ln_size, beta, most_right, scale, step }
     }
 
     /// s and ds/dt at a node; nothing past the end of the contour.
@@ -121,11 +138,12 @@ impl Line<'_> {
 
     /// Tail, density and its derivative, each over the size.
     fn integral(&self, kernel: &Kernel) -> [f64; 3] {
-        let mut step = if is_whole(self.count) { PI / 12.0 } else { 0.3 };
+        let mut step = if is_whole(self.count) { PI / 12.0 } else { self.step };
+        let agreement = if is_whole(self.count) { WHOLE_AGREEMENT } else { AGREEMENT };
         let mut sum = self.sum(0.0, step, kernel);
         for _ in 0..MOST_HALVINGS {
             let between = self.sum(0.5 * step, step, kernel);
-            let agree = |(a, b): (&f64, &f64)| (a - b).abs() <= AGREEMENT * (a + b).abs();
+            let agree = |(a, b): (&f64, &f64)| (a - b).abs() <= agreement * (a + b).abs();
             let enough = sum.iter().zip(&between).take(2).all(agree);
             for (all, other) in sum.iter_mut().zip(between) {
                 *all = 0.5 * (*all + other);

@@ -18,10 +18,10 @@ const POINTS: usize = 121;
 const GAIN_POINTS: usize = 61;
 
 /// And where every electron is counted.
-const COUNTED_POINTS: usize = 49;
+const COUNTED_POINTS: usize = 41;
 
 /// And where every point is a search that counts.
-const COUNTED_GAIN_POINTS: usize = 15;
+const COUNTED_GAIN_POINTS: usize = 13;
 
 /// The curves of an answer.
 pub fn curves(setup: &Setup, answer: &Answer) -> Vec<Curve> {

@@ -7,7 +7,7 @@ use crate::physics::webb_mcintyre_conradi;
 use crate::questions::curve::{Axis, Curve, Line, Mark, Scale, evenly};
 
 /// Points on a line.
-const POINTS: usize = 97;
+const POINTS: usize = 73;
 
 /// How far below the target densities are drawn, relative to the highest: errors are made there.
 const BELOW_TARGET: f64 = 1e-2;
