@@ -176,6 +176,8 @@ const MAY_BE_ABSENT: &[&str] = &[
     "certificate_uncertainty",
     "averaging_percent",
     "low_dbm",
+    "gaussian",
+    "difference_db",
     "correction_db",
     "correction_factor",
     "power_dbm",
@@ -277,6 +279,35 @@ proptest! {
                     prop_assert!(number.value.is_finite(), "{} of “{text}”", number.value);
                 }
             }
+        }
+    }
+}
+
+proptest! {
+    // Where no noise smooths the counts each answer takes a second.
+    #![proptest_config(fixed_seed(40))]
+
+    #[test]
+    fn every_bench_has_an_answer_of_finite_numbers_when_its_electrons_are_counted(bench in any_bench()) {
+        let mut bench = bench;
+        bench["decision"]["statistics"] = json!("exact");
+        if bench["decision"]["threshold"] == json!("q") {
+            bench["decision"]["threshold"] = json!("optimum");
+        }
+        let dbg = std::time::Instant::now();
+        let answer = asked("sensitivity", &bench).map_err(TestCaseError::fail)?;
+        eprintln!("DBG {:?} {} {} {} {} {}", dbg.elapsed(), bench["detector"], bench["amplifier"], bench["source"]["rin_db_per_hz"], bench["source"]["format"], bench["decision"]);
+        all_finite(&answer, "the answer").map_err(TestCaseError::fail)?;
+        let none = answer["none_because"].is_null();
+        prop_assert_eq!(none, answer["average_power_w"].is_number(), "either a power or a reason");
+        // A threshold halfway between whole counts moves in steps.
+        let smooth = bench["decision"]["threshold"] == json!("optimum");
+        if let Some(dbm) = answer["average_power_dbm"].as_f64().filter(|dbm| smooth && (-149.0..59.0).contains(dbm)) {
+            bench["source"]["average_power_dbm"] = json!(dbm);
+            let there = asked("sensitivity", &bench).map_err(TestCaseError::fail)?;
+            let (found, target) = (&there["error_ratio"], &bench["decision"]["target_error_ratio"]);
+            let (found, target) = (found.as_f64().unwrap_or(f64::NAN), target.as_f64().unwrap_or(f64::NAN));
+            prop_assert!((found / target).ln().abs() < 1e-5, "{found} against {target}");
         }
     }
 }
