@@ -59,7 +59,13 @@ fn contour_and_sum_agree_over_a_grid_of_receivers() {
                     // What lies beyond the table, by its last terms.
                     let beyond: f64 = chances[LENGTH - 500..].iter().sum::<f64>() * 20.0;
                     for noise in [0.0, 0.1, 0.6, 1.4, 1.6, 5.0, 80.0] {
-                        let count = Count { primaries, gain: Gain::new(gain, k), unmultiplied, noise };
+                        let count = Count {
+                            primaries,
+                            gain: Gain::new(gain, k),
+                            unmultiplied,
+                            noise,
+                            light_noise: 0.0,
+                        };
                         let spread = count.variance().sqrt();
                         let mut last = f64::NAN;
                         for step in [-5.0, -2.5, -1.0, -0.1, 0.0, 0.2, 1.0, 3.0, 6.0, 9.0, 14.0] {

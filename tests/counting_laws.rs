@@ -157,8 +157,13 @@ fn large_counts_are_gaussian() {
 #[test]
 fn a_count_without_gain_is_the_limit_of_a_little_gain() {
     for k in [0.0, 0.5, 1.0] {
-        let count =
-            |mean: f64| Count { primaries: 40.0, gain: Gain::new(mean, k), unmultiplied: 3.0, noise: 6.0 };
+        let count = |mean: f64| Count {
+            primaries: 40.0,
+            gain: Gain::new(mean, k),
+            unmultiplied: 3.0,
+            noise: 6.0,
+            light_noise: 0.0,
+        };
         let (none, little) = (count(1.0).chances(80.0), count(1.0 + 1e-9).chances(80.0));
         assert!((libm::log(none.above / little.above)).abs() < 1e-6, "{none:?} {little:?}");
     }

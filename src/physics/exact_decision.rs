@@ -42,7 +42,7 @@ pub struct CountDecision {
 /// use leastlight::physics::gain_transform::Gain;
 ///
 /// // Ideal counting: only an empty one is misread, ½e^(−20).
-/// let count = |primaries| Count { primaries, gain: Gain::UNIT, unmultiplied: 0.0, noise: 0.0 };
+/// let count = |primaries| Count { primaries, gain: Gain::UNIT, unmultiplied: 0.0, noise: 0.0, light_noise: 0.0 };
 /// let decision = decide(&[count(0.0), count(20.0)], Rule::Optimum);
 /// assert!((decision.error_ratio / (0.5 * (-20f64).exp()) - 1.0).abs() < 1e-7);
 /// assert_eq!(decision.thresholds, [1.0]);
@@ -68,6 +68,11 @@ pub fn error_ratio_at(levels: &[Count], thresholds: &[f64]) -> f64 {
     let wrong =
         |(index, &threshold): (usize, &f64)| Parted { levels, below: index + 1 }.at(threshold).wrong_bits;
     thresholds.iter().enumerate().map(wrong).sum::<f64>() / bits(levels)
+}
+
+/// The same count with its lumps smoothed out.
+fn soft(count: &Count) -> Count {
+    Count { noise: count.noise.max(ELECTRONS_SHOW), ..*count }
 }
 
 /// Levels, parted by the threshold that has `below` of them beneath it.
@@ -98,6 +103,9 @@ const MOST_STEPS: usize = 60;
 
 /// Logarithm of a ratio of densities that is nothing.
 const NOTHING_BESIDE: f64 = 40.0;
+
+/// Electrons by which a threshold is past a count.
+const JUST_PAST: f64 = 1e-6;
 
 /// Noise in electrons below which counts stand apart as lumps.
 const ELECTRONS_SHOW: f64 = 0.5;
@@ -152,62 +160,71 @@ impl Parted<'_> {
     }
 
     fn rough_balance(&self, threshold: f64) -> f64 {
-        let (balance, _) = self.balance(self.levels.iter().map(|level| level.rough_density(threshold)));
+        let (balance, _) = self.balance(self.levels.iter().map(|level| soft(level).rough_density(threshold)));
         // A density may be none at all, even both.
         if balance.is_nan() { 0.0 } else { balance.clamp(-1e6, 1e6) }
     }
 
     /// The threshold of the fewest wrong bits: found in approximate densities, mended with exact ones.
     fn best(&self) -> Place {
-        let rough = self.rough().unwrap_or_else(|| self.middle());
+        let (rough, low, high) =
+            self.rough().unwrap_or_else(|| (self.middle(), self.middle(), self.middle()));
         if self.levels.iter().all(Count::is_whole) {
             return self.least_on_grid(self.at(rough.round()));
         }
-        if self.levels.iter().any(|level| level.noise < ELECTRONS_SHOW) {
+        let on_grid = |offset: f64| self.least_on_grid(self.at(rough.floor() + offset));
+        if self.levels.iter().any(Count::is_whole) {
+            // Just past a count of the level without noise, or at one: in between nothing of it changes.
+            let (past, at) = (on_grid(JUST_PAST), on_grid(0.0));
+            return if at.wrong_bits < past.wrong_bits { at } else { past };
+        }
+        if self.levels.iter().any(|level| level.total_noise() < ELECTRONS_SHOW) {
             // Between lumps there is no density to go by, but from half to half the wrong bits have one valley.
-            let near = self.least_on_grid(self.at(rough.floor() + 0.5));
+            let near = on_grid(0.5);
             let wrong = |shift: f64| self.at(near.threshold + shift).wrong_bits;
             let least = self.at(near.threshold + minimum(wrong, -1.0, 1.0, 0.01).at);
             return if least.wrong_bits < near.wrong_bits { least } else { near };
         }
-        self.balanced(self.at(rough))
+        self.balanced(rough, low, high)
     }
 
     /// Where approximate densities balance; an end of what was searched where they do not.
-    fn rough(&self) -> Option<f64> {
+    /// With it the ends between which it was sought.
+    fn rough(&self) -> Option<(f64, f64, f64)> {
         let (lower, upper) = self.neighbours()?;
         let (mut low, mut high) = (lower.mean(), upper.mean());
-        // Two levels deep in noise of different width may be parted best beyond their means, but not where neither comes.
+        // Two levels deep in noise may be parted best beyond their means, because a skewed density is highest below its mean.
+        // Far below, the level with the wider noise is the likelier again, so the steps are small.
         if self.levels.len() == 2 {
-            let lowest = 0.5 - 30.0 * lower.noise.max(upper.noise);
-            let mut step = lower.variance().max(upper.variance()).sqrt();
-            for _ in 0..8 {
-                if self.rough_balance(low) > 0.0 && low > lowest {
-                    low = (low - step).max(lowest);
-                } else if self.rough_balance(high) < 0.0 {
-                    high += step;
-                } else {
-                    break;
-                }
-                step *= 2.0;
+            let step = 0.25 * soft(lower).variance().sqrt();
+            let lowest = lower.mean() - 24.0 * step;
+            while self.rough_balance(low) > 0.0 && low > lowest {
+                low -= step;
+            }
+            let step = upper.variance().sqrt();
+            let highest = upper.mean() + 8.0 * step;
+            while self.rough_balance(high) < 0.0 && high < highest {
+                high += step;
             }
         }
         if self.rough_balance(low) > 0.0 {
-            return Some(low);
+            return Some((low, low, high));
         }
         if self.rough_balance(high) < 0.0 {
-            return Some(high);
+            return Some((high, low, high));
         }
         let length = high - low;
         let share = root(|share| self.rough_balance(low + share * length), 0.0, 1.0, 1e-4).ok()?;
-        Some(low + share * length)
+        Some((low + share * length, low, high))
     }
 
-    /// Newton's method for the balance, between the places that are known to be too low and too high.
-    fn balanced(&self, start: Place) -> Place {
-        let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
-        let widest = self.levels.iter().map(Count::variance).fold(1.0, f64::max).sqrt();
-        let mut place = start;
+    /// Newton's method for the balance, between the places that are known to be too low and too high; the ends are known only
+    /// approximately, so they are set back a little.
+    fn balanced(&self, start: f64, low: f64, high: f64) -> Place {
+        let margin = 0.1 * (high - low).abs() + 1.0;
+        let (mut low, mut high) = (low - margin, high + margin);
+        let mut place = self.at(start);
+        let mut best = place;
         for _ in 0..MOST_STEPS {
             // No number where all densities are below the smallest: then nothing is wrong on any side.
             if !(place.balance.abs() > BALANCED) {
@@ -218,20 +235,19 @@ impl Parted<'_> {
             } else {
                 high = place.threshold;
             }
-            let step = (-place.balance / place.slope).clamp(-widest, widest);
-            let next = place.threshold + step;
-            let next = match (low < next && next < high, low.is_finite() && high.is_finite()) {
-                (true, _) if place.slope > 0.0 => next,
-                (_, true) => 0.5 * (low + high),
-                _ if low.is_finite() => low + 0.5 * widest,
-                _ => high - 0.5 * widest,
-            };
+            let newton = place.threshold - place.balance / place.slope;
+            let inside = place.slope > 0.0 && low < newton && newton < high;
+            let next = if inside { newton } else { 0.5 * (low + high) };
             if next == place.threshold || high - low < NARROW {
                 break;
             }
             place = self.at(next);
+            if !(place.wrong_bits >= best.wrong_bits) {
+                best = place;
+            }
         }
-        place
+        // Of places that differ by rounding only, the last is the most balanced.
+        if best.wrong_bits < place.wrong_bits * (1.0 - 1e-6) { best } else { place }
     }
 
     /// The least of the places that are whole electrons away, by steps that double while they help.

@@ -58,7 +58,8 @@ impl ExactLink {
                 primaries: (receiver.responsivity_a_per_w * power_w + steady_a) / electron_a,
                 gain,
                 unmultiplied,
-                noise: (noise.circuit + noise.source_intensity).sqrt() / electron_a,
+                noise: noise.circuit.sqrt() / electron_a,
+                light_noise: noise.source_intensity.sqrt() / electron_a,
             }
         };
         Counts {

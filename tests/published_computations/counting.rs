@@ -70,7 +70,8 @@ fn error_ratio(given: &mut Inputs) -> Result<Outputs, String> {
     let (mean, k) = avalanche(given)?;
     let (noise, threshold) = (given.number("noise")?, given.number("threshold")?);
     let chances = |primaries: f64| {
-        Count { primaries, gain: Gain::new(mean, k), unmultiplied: 0.0, noise }.chances(threshold)
+        Count { primaries, gain: Gain::new(mean, k), unmultiplied: 0.0, noise, light_noise: 0.0 }
+            .chances(threshold)
     };
     let (above, below) = (chances(given.number("zero")?).above, chances(given.number("one")?).below);
     Ok([
@@ -84,7 +85,7 @@ fn error_ratio(given: &mut Inputs) -> Result<Outputs, String> {
 fn tails(given: &mut Inputs) -> Result<Outputs, String> {
     let (mean, k) = avalanche(given)?;
     let (primaries, noise) = (given.number("primaries")?, given.number("noise")?);
-    let count = Count { primaries, gain: Gain::new(mean, k), unmultiplied: 0.0, noise };
+    let count = Count { primaries, gain: Gain::new(mean, k), unmultiplied: 0.0, noise, light_noise: 0.0 };
     Ok([
         ("chance_below", count.chances(given.number("below")?).below.into()),
         ("chance_above", count.chances(given.number("above")?).above.into()),
@@ -95,7 +96,8 @@ fn tails(given: &mut Inputs) -> Result<Outputs, String> {
 fn whole_counts(given: &mut Inputs) -> Result<Outputs, String> {
     let (mean, k) = avalanche(given)?;
     let primaries = given.number("primaries")?;
-    let count = Count { primaries, gain: Gain::new(mean, k), unmultiplied: 0.0, noise: 0.0 };
+    let count =
+        Count { primaries, gain: Gain::new(mean, k), unmultiplied: 0.0, noise: 0.0, light_noise: 0.0 };
     let electrons = given.numbers("electrons")?;
     let chances: Vec<f64> = electrons.iter().map(|m| libm::exp(count.chances(*m).ln_density)).collect();
     let up_to: Vec<f64> = electrons.iter().map(|m| count.chances(m + 1.0).below).collect();

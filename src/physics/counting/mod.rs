@@ -39,8 +39,11 @@ pub struct Count {
     pub gain: Gain,
     /// S, mean number of electrons that see no gain, ≥ 0.
     pub unmultiplied: f64,
-    /// σ, Gaussian noise in electrons, RMS, ≥ 0.
+    /// σ, Gaussian noise of the circuit in electrons, RMS, ≥ 0.
     pub noise: f64,
+    /// Gaussian noise of the light itself in electrons, RMS, ≥ 0: added wherever a primary electron came, for without one no light was
+    /// seen.
+    pub light_noise: f64,
 }
 
 /// Where a count lies with respect to a threshold.
@@ -63,20 +66,26 @@ impl Count {
         self.primaries * self.gain.mean() + self.unmultiplied
     }
 
+    /// All noise but that of the count, in electrons, RMS.
+    pub fn total_noise(&self) -> f64 {
+        libm::hypot(self.noise, self.light_noise)
+    }
+
     /// Variance of the count with its noise: N E[G²] + S + σ².
     pub fn variance(&self) -> f64 {
-        self.primaries * self.gain.raw_moments().0 + self.unmultiplied + self.noise * self.noise
+        let noise = self.total_noise();
+        self.primaries * self.gain.raw_moments().0 + self.unmultiplied + noise * noise
     }
 
     /// Whether it is a whole number of electrons, to all that matters.
     pub fn is_whole(&self) -> bool {
-        self.noise < NO_NOISE
+        self.total_noise() < NO_NOISE
     }
 
     /// The chances on both sides of a threshold in electrons, to better than 1e-7 of the smaller one.
     pub fn chances(&self, threshold: f64) -> Chances {
-        let (second, third) = self.gain.raw_moments();
-        let variance = self.primaries * second + self.unmultiplied + self.noise * self.noise;
+        let (_, third) = self.gain.raw_moments();
+        let variance = self.variance();
         let skewness = (self.primaries * third + self.unmultiplied) / (variance * variance.sqrt());
         // Not a number where nothing at all is counted: the same.
         if !(skewness >= NO_SKEWNESS) {
@@ -87,8 +96,8 @@ impl Count {
             return none.chances(threshold);
         };
         // Far below zero only noise gets there, beyond the smallest number.
-        if threshold < -40.0 * self.noise {
-            return gaussian(threshold, self.noise);
+        if threshold < -40.0 * self.total_noise() {
+            return gaussian(threshold, self.total_noise());
         }
         let some = crossed(&compound, threshold);
         match self.share_without_primaries() {
@@ -126,10 +135,10 @@ impl Count {
         let primaries = if unit { self.primaries + self.unmultiplied } else { self.primaries };
         let unmultiplied = if unit { 0.0 } else { self.unmultiplied };
         // So few that their logarithm has no digits left are none.
-        (primaries > 1e-290).then_some(Compound {
+        (primaries > 1e-290).then(|| Compound {
             primaries,
             unmultiplied,
-            noise: self.noise,
+            noise: self.total_noise(),
             gain: self.gain,
         })
     }
@@ -137,7 +146,13 @@ impl Count {
     /// What is counted while no primary electron comes.
     fn without_primaries(&self) -> Count {
         let unmultiplied = if self.gain.is_unit() { 0.0 } else { self.unmultiplied };
-        Count { primaries: unmultiplied, gain: Gain::UNIT, unmultiplied: 0.0, noise: self.noise }
+        Count {
+            primaries: unmultiplied,
+            gain: Gain::UNIT,
+            unmultiplied: 0.0,
+            noise: self.noise,
+            light_noise: 0.0,
+        }
     }
 
     /// The chance that no primary electron comes, with its logarithm first; 0 where it is beyond all error ratios.

@@ -28,7 +28,7 @@ pub fn distributions(setup: &Setup, answer: &Answer) -> Option<Curve> {
     let (first, last) = (counts.levels.first()?, counts.levels.last()?);
     let reach = 4.0 + (-2.0 * libm::log(setup.target)).sqrt();
     let (low, high) =
-        (first.mean() - reach * first.noise - 1.0, last.mean() + reach * last.variance().sqrt());
+        (first.mean() - reach * first.variance().sqrt() - 1.0, last.mean() + reach * last.variance().sqrt());
     let places: Vec<f64> = evenly(low, high, POINTS).collect();
     let exact = |(name, count): (&&str, &Count)| line(name, &places, |place| density(count, place), signal);
     let mut lines: Vec<Line> = names.iter().zip(&counts.levels).map(exact).collect();
@@ -71,13 +71,14 @@ fn above(line: &mut Line, floor: f64) {
 }
 
 fn density(count: &Count, place: f64) -> f64 {
-    let drawn = if count.noise < ELECTRONS_SHOW { Count { noise: 0.0, ..*count } } else { *count };
+    let lumps = count.total_noise() < ELECTRONS_SHOW;
+    let drawn = if lumps { Count { noise: 0.0, light_noise: 0.0, ..*count } } else { *count };
     libm::exp(drawn.chances(place).ln_density)
 }
 
 /// Noise that the approximation is spread by: the circuit's, and the unmultiplied electrons'.
 fn spread(count: &Count) -> f64 {
-    (count.noise * count.noise + count.unmultiplied).sqrt()
+    (count.total_noise() * count.total_noise() + count.unmultiplied).sqrt()
 }
 
 /// Width of the multiplied electrons alone.
