@@ -104,6 +104,9 @@ const MOST_STEPS: usize = 60;
 /// Logarithm of a ratio of densities that is nothing.
 const NOTHING_BESIDE: f64 = 40.0;
 
+/// Variance of a count in which a single electron is nothing.
+const WIDE_VARIANCE: f64 = 1e7;
+
 /// Electrons by which a threshold is past a count.
 const JUST_PAST: f64 = 1e-6;
 
@@ -167,9 +170,24 @@ impl Parted<'_> {
 
     /// The threshold of the fewest wrong bits: found in approximate densities, mended with exact ones.
     fn best(&self) -> Place {
+        let whole = self.levels.iter().all(Count::is_whole);
+        if let [dark, _] = self.levels
+            && dark.mean() == 0.0
+            && dark.is_whole()
+        {
+            // Nothing at all comes in a dark zero, so the least count is a one.
+            return self.at(if whole { 1.0 } else { JUST_PAST });
+        }
         let (rough, low, high) =
             self.rough().unwrap_or_else(|| (self.middle(), self.middle(), self.middle()));
-        if self.levels.iter().all(Count::is_whole) {
+        let narrow = |level: &Count| level.total_noise() < ELECTRONS_SHOW && level.variance() < WIDE_VARIANCE;
+        if !self.levels.iter().any(narrow) {
+            // Lumps are far finer than the threshold need be placed.
+            let levels: Vec<Count> = self.levels.iter().map(soft).collect();
+            let place = Parted { levels: &levels, ..*self }.balanced(rough, low, high);
+            return self.at(if whole { place.threshold.round() } else { place.threshold });
+        }
+        if whole {
             return self.least_on_grid(self.at(rough.round()));
         }
         let on_grid = |offset: f64| self.least_on_grid(self.at(rough.floor() + offset));
@@ -178,14 +196,11 @@ impl Parted<'_> {
             let (past, at) = (on_grid(JUST_PAST), on_grid(0.0));
             return if at.wrong_bits < past.wrong_bits { at } else { past };
         }
-        if self.levels.iter().any(|level| level.total_noise() < ELECTRONS_SHOW) {
-            // Between lumps there is no density to go by, but from half to half the wrong bits have one valley.
-            let near = on_grid(0.5);
-            let wrong = |shift: f64| self.at(near.threshold + shift).wrong_bits;
-            let least = self.at(near.threshold + minimum(wrong, -1.0, 1.0, 0.01).at);
-            return if least.wrong_bits < near.wrong_bits { least } else { near };
-        }
-        self.balanced(rough, low, high)
+        // Between lumps there is no density to go by, but from half to half the wrong bits have one valley.
+        let near = on_grid(0.5);
+        let wrong = |shift: f64| self.at(near.threshold + shift).wrong_bits;
+        let least = self.at(near.threshold + minimum(wrong, -1.0, 1.0, 0.01).at);
+        if least.wrong_bits < near.wrong_bits { least } else { near }
     }
 
     /// Where approximate densities balance; an end of what was searched where they do not.
@@ -196,10 +211,16 @@ impl Parted<'_> {
         // Two levels deep in noise may be parted best beyond their means, because a skewed density is highest below its mean.
         // Far below, the level with the wider noise is the likelier again, so the steps are small.
         if self.levels.len() == 2 {
-            let step = 0.25 * soft(lower).variance().sqrt();
-            let lowest = lower.mean() - 24.0 * step;
-            while self.rough_balance(low) > 0.0 && low > lowest {
-                low -= step;
+            // Down to no electron at all, then into the noise about it.
+            let noise = soft(lower).total_noise();
+            let smaller = |place: &f64| Some(0.7 * place).filter(|place| *place > noise);
+            let downwards = core::iter::successors(smaller(&lower.mean()), smaller);
+            let into_noise = (0..=6).map(|n| -f64::from(n) * noise);
+            for place in downwards.chain(into_noise) {
+                if self.rough_balance(low) <= 0.0 {
+                    break;
+                }
+                low = place;
             }
             let step = upper.variance().sqrt();
             let highest = upper.mean() + 8.0 * step;

@@ -63,14 +63,19 @@ pub fn crossed(count: &Compound, threshold: f64) -> Chances {
         return Chances { below, above, ln_density: f64::NEG_INFINITY, slope: 0.0 };
     };
     let ln_size = saddle.k0 - saddle.s * threshold;
+    let ln_density = ln_size - libm::log(ROOT_TWO_PI) - 0.5 * libm::log(saddle.k2);
+    let by_side = Chances { below, above, ln_density, slope: -saddle.s };
     if ln_size < BEYOND {
-        let ln_density = ln_size - libm::log(ROOT_TWO_PI) - 0.5 * libm::log(saddle.k2);
-        return Chances { below, above, ln_density, slope: -saddle.s };
+        return by_side;
     }
     let line = Line::new(count, threshold, saddle);
     let kernel = Kernel::new(count, threshold, line.start.s);
     let [tail, density, falling] = line.integral(&kernel);
     let tail = libm::exp(line.ln_size) * tail;
+    if !tail.is_finite() || !density.is_finite() || !falling.is_finite() {
+        // At gains of a million the transform runs out of digits at its end; the side of the mean is all that is left.
+        return by_side;
+    }
     let (below, above) = if line.start.s > 0.0 { (mass - tail, tail) } else { (-tail, mass + tail) };
     Chances {
         below: below.clamp(0.0, mass),
@@ -204,7 +209,8 @@ fn apart_from_pole(count: &Compound, saddle: Local) -> Local {
         return saddle;
     }
     let place = count.gain.at(Complex::from(saddle.v));
-    count.gain.follow(&place, Complex::from(-wide)).map_or(saddle, |place| count.local(place.v.re))
+    let moved = count.gain.follow(&place, Complex::from(-wide)).map(|place| count.local(place.v.re));
+    moved.filter(|local| local.k2 > 0.0 && local.k2.is_finite()).unwrap_or(saddle)
 }
 
 /// What the integrand is multiplied with for the tail, the density and its derivative.

@@ -216,6 +216,10 @@ fn doubts(setup: &Setup, answer: &Answer) -> Vec<String> {
     }
     if !setup.exact {
         doubts.extend(few_photons(answer));
+    } else if answer.gain > 1e4 {
+        doubts.push(
+            "Counting was checked for gains up to 10 000. Compare with the Gaussian model, and check the gain.".to_owned(),
+        );
     }
     doubts
 }
