@@ -248,7 +248,7 @@ impl Parted<'_> {
         let mut best = place;
         for _ in 0..MOST_STEPS {
             // No number where all densities are below the smallest: then nothing is wrong on any side.
-            if !(place.balance.abs() > BALANCED) {
+            if place.balance.is_nan() || place.balance.abs() <= BALANCED {
                 break;
             }
             if place.balance < 0.0 {
@@ -263,7 +263,7 @@ impl Parted<'_> {
                 break;
             }
             place = self.at(next);
-            if !(place.wrong_bits >= best.wrong_bits) {
+            if place.wrong_bits < best.wrong_bits {
                 best = place;
             }
         }

@@ -160,7 +160,7 @@ impl Line<'_> {
             }
             step *= 0.5;
             // What does not shrink any more is rounding.
-            if !(off > agreement) || (off < ROUNDING && off > 0.5 * last) {
+            if off.is_nan() || off <= agreement || (off < ROUNDING && off > 0.5 * last) {
                 break;
             }
             last = off;

@@ -71,7 +71,7 @@ impl Count {
         libm::hypot(self.noise, self.light_noise)
     }
 
-    /// Variance of the count with its noise: N E[G²] + S + σ².
+    /// Variance of the count with its noise: `N E[G²] + S + σ²`.
     pub fn variance(&self) -> f64 {
         let noise = self.total_noise();
         self.primaries * self.gain.raw_moments().0 + self.unmultiplied + noise * noise
@@ -88,7 +88,7 @@ impl Count {
         let variance = self.variance();
         let skewness = (self.primaries * third + self.unmultiplied) / (variance * variance.sqrt());
         // Not a number where nothing at all is counted: the same.
-        if !(skewness >= NO_SKEWNESS) {
+        if skewness.is_nan() || skewness < NO_SKEWNESS {
             return gaussian(threshold - self.mean(), variance.sqrt());
         }
         let none = self.without_primaries();
