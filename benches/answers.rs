@@ -1,7 +1,9 @@
 //! How long an answer takes: `cargo bench`. The goal in the page is a display frame, 16 ms, for everything.
 
 use divan::{Bencher, black_box};
+use leastlight::bench::Bench;
 use leastlight::door;
+use leastlight::questions::QUESTIONS;
 use leastlight::tree::Tree;
 
 fn main() {
@@ -43,6 +45,24 @@ fn avalanche_bias_four_levels(bencher: Bencher) {
     let mut bench = door::demo();
     put(&mut bench, "source", "format", Tree::from("pam4"));
     bencher.bench(|| door::ask("avalanche_bias", black_box(&bench), &Tree::Null));
+}
+
+/// The same receiver as the first with its electrons counted: all curves, distributions, best gain.
+#[divan::bench]
+fn sensitivity_counted(bencher: Bencher) {
+    let mut bench = door::demo();
+    put(&mut bench, "decision", "statistics", Tree::from("exact"));
+    bencher.bench(|| door::ask("sensitivity", black_box(&bench), &Tree::Null));
+}
+
+/// Only the figures of it, as at each point of a sweep.
+#[divan::bench]
+fn sensitivity_counted_figures(bencher: Bencher) {
+    let mut bench = door::demo();
+    put(&mut bench, "decision", "statistics", Tree::from("exact"));
+    let bench = Bench::from_tree(&bench).expect("the demonstration bench is good");
+    let question = QUESTIONS.iter().find(|question| question.name == "sensitivity").expect("it is there");
+    bencher.bench(|| (question.numbers)(black_box(&bench)));
 }
 
 /// A reading with its curve and table.

@@ -246,6 +246,35 @@ proptest! {
 }
 
 proptest! {
+    // Where no noise smooths the counts each answer takes a second.
+    #![proptest_config(ProptestConfig { max_shrink_iters: 0, ..fixed_seed(60) })]
+
+    #[test]
+    fn every_bench_has_an_answer_of_finite_numbers_when_its_electrons_are_counted(bench in any_bench()) {
+        let mut bench = bench;
+        bench["decision"]["statistics"] = json!("exact");
+        if bench["decision"]["threshold"] == json!("q") {
+            bench["decision"]["threshold"] = json!("optimum");
+        }
+        let answer = asked("sensitivity", &bench).map_err(TestCaseError::fail)?;
+        all_finite(&answer, "the answer").map_err(TestCaseError::fail)?;
+        let none = answer["none_because"].is_null();
+        prop_assert_eq!(none, answer["average_power_w"].is_number(), "either a power or a reason");
+        // A threshold halfway between whole counts moves in steps.
+        // At a gain of a million the transform has no digits left.
+        let gain = bench["detector"]["avalanche"]["gain"].as_f64().unwrap_or(1.0);
+        let smooth = bench["decision"]["threshold"] == json!("optimum") && gain < 1e4;
+        if let Some(dbm) = answer["average_power_dbm"].as_f64().filter(|dbm| smooth && (-149.0..59.0).contains(dbm)) {
+            bench["source"]["average_power_dbm"] = json!(dbm);
+            let there = asked("sensitivity", &bench).map_err(TestCaseError::fail)?;
+            let (found, target) = (&there["error_ratio"], &bench["decision"]["target_error_ratio"]);
+            let (found, target) = (found.as_f64().unwrap_or(f64::NAN), target.as_f64().unwrap_or(f64::NAN));
+            prop_assert!((found / target).ln().abs() < 1e-5, "{found} against {target}");
+        }
+    }
+}
+
+proptest! {
     #![proptest_config(fixed_seed(2000))]
 
     #[test]

@@ -66,6 +66,19 @@ fn benches() -> Vec<Value> {
     vary("/surroundings/background_power_w", &[json!(3.3e-7)]);
     vary("/meter/set_wavelength_nm", &[json!(1550), json!(1500.1), json!(850)]);
     vary("/meter/certificate/form", &[json!("correction_factor")]);
+    // Counted electrons: smooth, few beside little noise, whole, four levels.
+    let exact = |pointer: &str, value: Value| {
+        let mut bench = good.clone();
+        bench["decision"]["statistics"] = json!("exact");
+        *bench.pointer_mut(pointer).expect("the good bench has it") = value;
+        bench
+    };
+    benches.push(exact("/title", json!("counted")));
+    benches.push(exact("/decision/threshold", json!("midpoint")));
+    benches.push(exact("/detector/avalanche", json!(null)));
+    benches.push(exact("/detector/avalanche/ionisation_ratio", json!(1)));
+    benches.push(exact("/amplifier/noise/current_a", json!(1e-9)));
+    benches.push(exact("/source/format", json!("pam4")));
     benches
 }
 

@@ -46,12 +46,14 @@ impl From<Threshold> for decision::Threshold {
 pub enum Statistics {
     /// A Gaussian at each level.
     Gaussian,
+    /// Electrons counted one by one: Poisson primaries, random gain, Gaussian circuit noise.
+    Exact,
 }
 
 const THRESHOLDS: &[(&str, Threshold)] =
     &[("optimum", Threshold::Optimum), ("midpoint", Threshold::Midpoint), ("q", Threshold::Q)];
 
-const STATISTICS: &[(&str, Statistics)] = &[("gaussian", Statistics::Gaussian)];
+const STATISTICS: &[(&str, Statistics)] = &[("gaussian", Statistics::Gaussian), ("exact", Statistics::Exact)];
 
 /// The numbers of a decision.
 pub const FIELDS: &[Field] = &[Field {

@@ -1,7 +1,9 @@
 //! Mathematics that makes sense without units.
 
 pub mod cholesky;
+pub mod complex;
 pub mod derivative;
+pub mod gamma;
 pub mod minimum;
 pub mod pchip;
 pub mod root;

@@ -107,7 +107,7 @@ fn at(levels: &[Level], thresholds_a: Vec<f64>) -> Decision {
 }
 
 /// Bits in all levels together: 2 for two levels, 8 for four.
-fn bits(levels: &[Level]) -> f64 {
+pub(super) fn bits<T>(levels: &[T]) -> f64 {
     let per_level = levels.len().checked_ilog2().unwrap_or(0).max(1);
     f64::from(per_level) * levels.len() as f64
 }
@@ -155,7 +155,7 @@ fn crossing(lower: &Level, upper: &Level) -> f64 {
 }
 
 /// Whether a level has, in the bit that the threshold `below` levels up flips, the value of the side above: +1, or −1.
-fn sign(below: usize, index: usize) -> f64 {
+pub(super) fn sign(below: usize, index: usize) -> f64 {
     let gray = |i: usize| i ^ (i >> 1);
     let flipped = gray(below) ^ gray(below - 1);
     if gray(index) & flipped == gray(below) & flipped { 1.0 } else { -1.0 }

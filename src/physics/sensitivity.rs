@@ -9,7 +9,7 @@ use crate::numeric::root::root;
 use crate::statistics::normal::upper_tail_quantile;
 
 /// The most average power that is looked at, in W: far beyond what any detector survives.
-const MOST_POWER_W: f64 = 1e3;
+pub(super) const MOST_POWER_W: f64 = 1e3;
 
 /// How bits become levels.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -140,7 +140,7 @@ pub fn least_average_power_w(link: &Link, target_error_ratio: f64) -> Result<f64
 }
 
 /// A power near the answer, from the closed form with a dark zero and the penalties of extinction and of four levels.
-fn guess_w(link: &Link, target_error_ratio: f64) -> f64 {
+pub(super) fn guess_w(link: &Link, target_error_ratio: f64) -> f64 {
     let receiver = &link.receiver;
     let eyes = match link.format {
         Format::Nrz => 1.0,
@@ -177,9 +177,23 @@ pub enum BestGain {
 /// * `link_at` – the link at a gain: noise factor and bandwidth may hang on it
 /// * `target_error_ratio` – above 0 and below ½
 /// * `gain_max` – the highest gain looked at, > 1
-///
-/// Gains five times apart find the valley, Brent's method its floor: to about 1e-7, for it is flat.
 pub fn best_gain(link_at: impl Fn(f64) -> Link, target_error_ratio: f64, gain_max: f64) -> BestGain {
+    let power_w = |gain: f64| least_average_power_w(&link_at(gain), target_error_ratio);
+    gain_of_least_power(power_w, gain_max, 1e-9)
+}
+
+/// The gain at which a power is least.
+///
+/// * `power_w` – the power at a gain, in W, if any answers
+/// * `gain_max` – the highest gain looked at, > 1
+/// * `relative` – accuracy of the gain's logarithm, relative to that of the highest gain, > 0
+///
+/// Gains five times apart find the valley, Brent's method its floor: at best to about 1e-7, for it is flat.
+pub fn gain_of_least_power(
+    power_w: impl Fn(f64) -> Result<f64, NoPower>,
+    gain_max: f64,
+    relative: f64,
+) -> BestGain {
     debug_assert!(gain_max > 1.0);
     let ln_max = libm::log(gain_max);
     let gain = |ln_gain: f64| {
@@ -191,9 +205,7 @@ pub fn best_gain(link_at: impl Fn(f64) -> Link, target_error_ratio: f64, gain_ma
             libm::exp(ln_gain)
         }
     };
-    let power_w = |ln_gain: f64| {
-        least_average_power_w(&link_at(gain(ln_gain)), target_error_ratio).unwrap_or(f64::INFINITY)
-    };
+    let power_w = |ln_gain: f64| power_w(gain(ln_gain)).unwrap_or(f64::INFINITY);
     let parts = (ln_max / libm::log(5.0)).ceil().clamp(2.0, 1000.0) as usize;
     let place = |part: usize| ln_max * (part as f64 / parts as f64);
     let coarse: Vec<(usize, f64)> = (0..=parts).map(|part| (part, power_w(place(part)))).collect();
@@ -203,7 +215,7 @@ pub fn best_gain(link_at: impl Fn(f64) -> Link, target_error_ratio: f64, gain_ma
         return BestGain::None;
     };
     let (low, high) = (place(part.saturating_sub(1)), place((part + 1).min(parts)));
-    let least = minimum(power_w, low, high, 1e-9);
+    let least = minimum(power_w, low, high, relative);
     if least.at >= ln_max {
         BestGain::NoUpperEnd { power_w: least.value }
     } else {

@@ -1,6 +1,7 @@
 //! What the cases in `tests/published/` may ask for, by name.
 
 mod bias;
+mod counting;
 mod door;
 mod light;
 mod log;
@@ -12,5 +13,15 @@ use crate::support::cases::Computation;
 
 /// Everything that a case may ask for.
 pub fn all() -> Vec<(&'static str, Computation)> {
-    [bias::ALL, door::ALL, light::ALL, log::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
+    [
+        bias::ALL,
+        counting::ALL,
+        door::ALL,
+        light::ALL,
+        log::ALL,
+        mathematics::ALL,
+        receiver::ALL,
+        transfer::ALL,
+    ]
+    .concat()
 }

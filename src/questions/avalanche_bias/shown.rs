@@ -257,6 +257,13 @@ fn table(answer: &Answer) -> Option<Table> {
 
 fn doubts(setup: &Setup, answer: &Answer) -> Vec<String> {
     let mut doubts = Vec::new();
+    if setup.receiver.exact {
+        doubts.push(
+            "Exact statistics are chosen, and the search for the bias does not know them: it is that of the Gaussian model. \
+             Look at the exact sensitivity at this gain before settling."
+                .to_owned(),
+        );
+    }
     if let Some(db) = answer.improvement_db.filter(|db| answer.bias_v.is_some() && *db < WORTHWHILE_DB) {
         doubts.push(format!(
             "The best gain is only {} dB better than gain 1: a PIN photodiode would do all but as well, without the high \

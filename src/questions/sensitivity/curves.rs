@@ -1,6 +1,7 @@
 //! Error ratio against power, and sensitivity against gain.
 
 use super::Answer;
+use super::distributions::distributions;
 use super::setup::Setup;
 use crate::physics::decibel::{dbm_from_watt, watt_from_dbm};
 use crate::physics::decision::Threshold;
@@ -16,9 +17,18 @@ const POINTS: usize = 121;
 /// Fewer do for the smooth valley of the gain, where each point is a search of its own.
 const GAIN_POINTS: usize = 61;
 
+/// And where every electron is counted.
+const COUNTED_POINTS: usize = 41;
+
+/// And where every point is a search that counts.
+const COUNTED_GAIN_POINTS: usize = 13;
+
 /// The curves of an answer.
 pub fn curves(setup: &Setup, answer: &Answer) -> Vec<Curve> {
     let mut curves = vec![error_ratio_against_power(setup, answer)];
+    if setup.exact {
+        curves.extend(distributions(setup, answer));
+    }
     curves.extend(sensitivity_against_gain(setup, answer));
     curves
 }
@@ -27,20 +37,28 @@ fn error_ratio_against_power(setup: &Setup, answer: &Answer) -> Curve {
     let link = setup.link();
     let textbook = Link { threshold: Threshold::QFactor, ..link };
     let (low, high) = power_range_dbm(setup, &link, answer);
-    let line = |name: &str, link: &Link| {
-        let points = evenly(low, high, POINTS).map(|dbm| (dbm, link.error_ratio(watt_from_dbm(dbm))));
+    let line = |name: &str, points: usize, ratio_at: &dyn Fn(f64) -> f64| {
+        let points = evenly(low, high, points).map(|dbm| (dbm, ratio_at(watt_from_dbm(dbm))));
         let (x, y) = points.filter(|(_, ratio)| *ratio >= 0.999 * LOWEST_RATIO).unzip();
         Line { name: name.to_owned(), x, y }
     };
-    let own = match link.threshold {
-        Threshold::Optimum => "at the best threshold",
-        Threshold::Midpoint => "at the middle threshold",
-        Threshold::QFactor => "by the textbook Q",
+    let gaussian = |average_w: f64| link.error_ratio(average_w);
+    let textbook = |average_w: f64| textbook.error_ratio(average_w);
+    let lines = match (setup.exact, link.threshold) {
+        (true, _) => vec![
+            line("counted exactly", COUNTED_POINTS, &|average_w| setup.error_ratio(&link, average_w)),
+            line("by the Gaussian model", POINTS, &gaussian),
+        ],
+        (false, Threshold::Optimum) => vec![
+            line("at the best threshold", POINTS, &gaussian),
+            line("by the textbook Q", POINTS, &textbook),
+        ],
+        (false, Threshold::Midpoint) => vec![
+            line("at the middle threshold", POINTS, &gaussian),
+            line("by the textbook Q", POINTS, &textbook),
+        ],
+        (false, Threshold::QFactor) => vec![line("by the textbook Q", POINTS, &textbook)],
     };
-    let mut lines = vec![line(own, &link)];
-    if link.threshold != Threshold::QFactor {
-        lines.push(line("by the textbook Q", &textbook));
-    }
     let mut marks = vec![Mark::Level { name: "target".to_owned(), axis: "y", at: setup.target }];
     if let Some(x) = answer.average_power_dbm {
         marks.push(Mark::Point { name: "sensitivity".to_owned(), x, y: setup.target });
@@ -77,14 +95,23 @@ fn sensitivity_against_gain(setup: &Setup, answer: &Answer) -> Option<Curve> {
     }
     let best = answer.best_gain.as_ref().and_then(|best| best.gain);
     let most = setup.reach((5.0 * setup.gain.max(best.unwrap_or(setup.gain))).max(30.0));
-    let dbm_at = |gain: f64| {
-        least_average_power_w(&setup.link_at(gain), setup.target)
-            .ok()
-            .map(|power_w| (gain, dbm_from_watt(power_w)))
+    let line = |name: &str, points: usize, power_at: &dyn Fn(&Link) -> Option<f64>| {
+        let places = evenly(0.0, libm::log(most), points).map(|ln_gain| libm::exp(ln_gain).clamp(1.0, most));
+        let dbm_at = |gain: f64| power_at(&setup.link_at(gain)).map(|power_w| (gain, dbm_from_watt(power_w)));
+        let (x, y) = places.filter_map(dbm_at).unzip();
+        Line { name: name.to_owned(), x, y }
     };
-    let places = evenly(0.0, libm::log(most), GAIN_POINTS).map(|ln_gain| libm::exp(ln_gain).clamp(1.0, most));
-    let (x, y): (Vec<f64>, Vec<f64>) = places.filter_map(dbm_at).unzip();
-    if x.is_empty() {
+    let gaussian = |link: &Link| least_average_power_w(link, setup.target).ok();
+    let counted = |link: &Link| setup.least_power_w(link, setup.target).ok();
+    let mut lines = match setup.exact {
+        true => vec![
+            line("counted exactly", COUNTED_GAIN_POINTS, &counted),
+            line("by the Gaussian model", GAIN_POINTS, &gaussian),
+        ],
+        false => vec![line("sensitivity", GAIN_POINTS, &gaussian)],
+    };
+    lines.retain(|line| !line.x.is_empty());
+    if lines.is_empty() {
         return None;
     }
     let mut marks = Vec::new();
@@ -99,7 +126,7 @@ fn sensitivity_against_gain(setup: &Setup, answer: &Answer) -> Option<Curve> {
         title: "Sensitivity against gain",
         x: Axis { label: "Gain", unit: "", scale: Scale::Log },
         y: Axis { label: "Average power needed", unit: "dBm", scale: Scale::Linear },
-        lines: vec![Line { name: "sensitivity".to_owned(), x, y }],
+        lines,
         marks,
     })
 }

@@ -1,6 +1,8 @@
 //! How little light is enough?
 
 mod curves;
+mod distributions;
+mod gaussian;
 pub(in crate::questions) mod setup;
 pub(in crate::questions) mod shown;
 
@@ -10,12 +12,16 @@ use super::shown::Shown;
 use crate::bench::Bench;
 use crate::bench::decision::Threshold as Rule;
 use crate::fault::Faults;
+use crate::numeric::minimum::minimum;
 use crate::physics::decibel::{dbm_from_watt, watt_from_dbm};
-use crate::physics::decision::{Threshold, decide, q_factors};
+use crate::physics::decision::{Threshold, q_factors};
 use crate::physics::levels::modulation_amplitude_w;
 use crate::physics::receiver::Noise;
-use crate::physics::sensitivity::{BestGain, Link, NoPower, best_gain, least_average_power_w};
+use crate::physics::sensitivity::{
+    BestGain, Link, NoPower, best_gain, gain_of_least_power, least_average_power_w,
+};
 use crate::physics::{light, quantum_limit};
+use gaussian::GaussianBeside;
 use serde::Serialize;
 use setup::Setup;
 
@@ -63,6 +69,8 @@ pub struct Answer {
     pub levels: Vec<LevelAtSensitivity>,
     /// The gain that makes the sensitivity best; absent for a PIN, or where no power is enough.
     pub best_gain: Option<BestGainFound>,
+    /// What the Gaussian model says beside it, where electrons are counted exactly.
+    pub gaussian: Option<GaussianBeside>,
     /// The limit of ideal photon counting, for scale.
     pub quantum_limit: QuantumLimit,
     /// Why there is no such power.
@@ -122,6 +130,7 @@ pub struct NoneBecause {
 pub fn ask(bench: &Bench) -> Result<Answer, Faults> {
     let setup = Setup::new(bench)?;
     let mut answer = figures(&setup, bench);
+    answer.best_gain = find_best_gain(&setup, answer.average_power_dbm);
     answer.curves = curves::curves(&setup, &answer);
     answer.shown = shown::shown(&setup, bench, &answer);
     Ok(answer)
@@ -133,7 +142,7 @@ pub fn prepare(bench: &Bench, of: &'static str) -> Result<Prepared, Faults> {
     Setup::new(bench)?;
     let power_w = |bench: &Bench| {
         let setup = Setup::new(bench).ok()?;
-        least_average_power_w(&setup.link(), setup.target).ok()
+        setup.least_power_w(&setup.link(), setup.target).ok()
     };
     let value: NumberOf = match of {
         "average_power_w" => Box::new(move |bench, _| power_w(bench)),
@@ -157,19 +166,19 @@ pub fn numbers(bench: &Bench) -> Result<Vec<(&'static str, Option<f64>)>, Faults
         ("error_ratio_q", answer.error_ratio_q),
         ("margin_db", answer.margin_db),
         ("excess_noise_factor", Some(answer.excess_noise_factor)),
+        ("gaussian_difference_db", answer.gaussian.and_then(|gaussian| gaussian.difference_db)),
     ])
 }
 
 fn figures(setup: &Setup, bench: &Bench) -> Answer {
     let link = setup.link();
-    let found = least_average_power_w(&link, setup.target);
+    let found = setup.least_power_w(&link, setup.target);
     let power_w = found.as_ref().ok().copied();
     let power_dbm = power_w.map(dbm_from_watt);
     let rule = bench.decision.as_ref().map_or(Rule::Optimum, |decision| decision.threshold);
 
     let levels = power_w.map(|power_w| levels_at(&link, power_w)).unwrap_or_default();
-    let decision = power_w.map(|power_w| decide(&link.levels(power_w), link.threshold));
-    let thresholds_a = decision.map(|decision| decision.thresholds_a).unwrap_or_default();
+    let thresholds_a = power_w.map(|power_w| setup.thresholds_a(&link, power_w)).unwrap_or_default();
     let worst_eye =
         power_w.map(|power_w| q_factors(&link.levels(power_w)).into_iter().fold(f64::INFINITY, f64::min));
 
@@ -197,11 +206,12 @@ fn figures(setup: &Setup, bench: &Bench) -> Answer {
         thresholds_a,
         q_factor: worst_eye.filter(|q| q.is_finite()),
         received_power_dbm: setup.received_dbm,
-        error_ratio: received_w.map(|power_w| link.error_ratio(power_w)),
+        error_ratio: received_w.map(|power_w| setup.error_ratio(&link, power_w)),
         error_ratio_q: received_w.map(|power_w| textbook.error_ratio(power_w)),
         margin_db: setup.received_dbm.zip(power_dbm).map(|(received, least)| received - least),
         levels,
-        best_gain: find_best_gain(setup, power_dbm),
+        best_gain: None,
+        gaussian: setup.exact.then(|| GaussianBeside::new(&link, setup.target, power_dbm, received_w)),
         quantum_limit: ideal_counter(setup),
         none_because: found.err().map(|why| none_because(&why, setup)),
         curves: Vec::new(),
@@ -241,11 +251,12 @@ fn find_best_gain(setup: &Setup, here_dbm: Option<f64>) -> Option<BestGainFound>
     if !setup.is_avalanche() {
         return None;
     }
-    let reach = setup.reach(MOST_GAIN);
-    let (gain, power_w) = match best_gain(|gain| setup.link_at(gain), setup.target, reach) {
+    let (gain, power_w) = match search_best_gain(setup) {
         BestGain::At { gain, power_w } => (Some(gain), power_w),
         // A table of noise ends before gain stops to help: its end is the best that is known.
-        BestGain::NoUpperEnd { power_w } => (Some(reach).filter(|reach| *reach < MOST_GAIN), power_w),
+        BestGain::NoUpperEnd { power_w } => {
+            (Some(setup.reach(MOST_GAIN)).filter(|reach| *reach < MOST_GAIN), power_w)
+        }
         BestGain::None => return None,
     };
     let best_dbm = dbm_from_watt(power_w);
@@ -255,6 +266,26 @@ fn find_best_gain(setup: &Setup, here_dbm: Option<f64>) -> Option<BestGainFound>
         improvement_db: here_dbm.map(|here_dbm| here_dbm - best_dbm),
         closed_form_gain: setup.closed_form_gain(),
     })
+}
+
+/// Counting takes a hundred times as long and moves the best gain little: it looks about the Gaussian one, and to a thousandth.
+fn search_best_gain(setup: &Setup) -> BestGain {
+    let reach = setup.reach(MOST_GAIN);
+    let gaussian = best_gain(|gain| setup.link_at(gain), setup.target, reach);
+    if !setup.exact {
+        return gaussian;
+    }
+    let power_w = |gain: f64| setup.counted(setup.link_at(gain)).least_average_power_w(setup.target);
+    match gaussian {
+        BestGain::At { gain: about, .. } => {
+            let (low, high) = (libm::log((about / 5.0).max(1.0)), libm::log(about * 5.0));
+            let at = |ln_gain: f64| power_w(libm::exp(ln_gain)).unwrap_or(f64::INFINITY);
+            let least = minimum(at, low, high, 1e-3);
+            let gain = libm::exp(least.at).max(1.0);
+            if least.value.is_finite() { BestGain::At { gain, power_w: least.value } } else { BestGain::None }
+        }
+        BestGain::NoUpperEnd { .. } | BestGain::None => gain_of_least_power(power_w, MOST_GAIN, 1e-3),
+    }
 }
 
 /// Why no power reaches the target.

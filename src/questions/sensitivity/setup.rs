@@ -3,16 +3,19 @@
 use crate::bench::Bench;
 use crate::bench::amplifier::{Amplifier, CircuitNoise};
 use crate::bench::avalanche::{Avalanche, ExcessNoise as NoiseLaw};
+use crate::bench::decision::{Decision, Statistics, Threshold};
 use crate::bench::detector::{Detector, Responsivity};
 use crate::bench::source::Format;
-use crate::fault::{Code, Fault, Faults};
+use crate::fault::{Allowed, Code, Fault, Faults};
 use crate::physics::closed_form::{self, IdealLink};
 use crate::physics::constants::ZERO_CELSIUS_K;
 use crate::physics::decibel::ratio_from_db;
+use crate::physics::decision::decide;
+use crate::physics::exact_link::ExactLink;
 use crate::physics::excess_noise::{ExcessNoise, FactorTable};
 use crate::physics::filter::noise_bandwidth_ratio;
 use crate::physics::receiver::Receiver;
-use crate::physics::sensitivity::Link;
+use crate::physics::sensitivity::{Link, NoPower, least_average_power_w};
 use crate::physics::{avalanche, light, noise};
 use crate::questions::needs::Needs;
 use crate::questions::spectral::Spectral;
@@ -26,6 +29,8 @@ pub struct Setup {
     base: Link,
     /// Excess noise, for an avalanche detector.
     pub excess_noise: Option<ExcessNoise>,
+    /// Whether electrons are counted one by one.
+    pub exact: bool,
     /// Mean gain; 1 for a PIN.
     pub gain: f64,
     /// Detector bandwidth at unit gain and gain–bandwidth product, Hz, as far as given.
@@ -69,6 +74,7 @@ impl Setup {
             needs.part(&bench.decision, "/decision", "A decision is needed: which error ratio to reach.");
         let target =
             decision.and_then(|part| needs.number(part.target_error_ratio, "/decision/target_error_ratio"));
+        let exact = decision.is_some_and(|part| counted_exactly(part, &mut needs));
         let wavelength_nm = source.and_then(|source| source.wavelength_nm);
         let responsivity = detector.and_then(|part| responsivity_a_per_w(part, wavelength_nm, &mut needs));
         let noise_bandwidth = amplifier.and_then(|part| noise_bandwidth_hz(part, &mut needs));
@@ -85,6 +91,12 @@ impl Setup {
             );
             let given = Tree::Number(gain);
             needs.faults.push(Fault::new("/detector/avalanche/gain", Code::Range, given, &sentence));
+        }
+        if exact && noise.iter().flatten().any(|noise| !matches!(noise, ExcessNoise::McIntyre { .. })) {
+            let sentence = "Exact statistics need McIntyre's gain distribution: describe the excess noise by the ionisation \
+                            ratio, or choose Gaussian statistics.";
+            let fault = Fault::new("/decision/statistics", Code::Conflict, Tree::from("exact"), sentence);
+            needs.faults.push(fault);
         }
         let made = (|| {
             let (source, detector, amplifier, decision) = (source?, detector?, amplifier?, decision?);
@@ -109,6 +121,7 @@ impl Setup {
                     threshold: decision.threshold.into(),
                 },
                 excess_noise: noise.flatten(),
+                exact,
                 gain: gain.map_or(Some(1.0), |gain| gain)?,
                 detector_bandwidth_hz: detector.bandwidth_hz,
                 gain_bandwidth_hz: avalanche.and_then(|part| part.gain_bandwidth_hz),
@@ -121,6 +134,40 @@ impl Setup {
             })
         })();
         needs.all(made)
+    }
+
+    /// The least average power in W, with the statistics that were asked for.
+    pub fn least_power_w(&self, link: &Link, target: f64) -> Result<f64, NoPower> {
+        match self.exact {
+            true => self.counted(*link).least_average_power_w(target),
+            false => least_average_power_w(link, target),
+        }
+    }
+
+    /// The error ratio at an average power in W, with the statistics that were asked for.
+    pub fn error_ratio(&self, link: &Link, average_w: f64) -> f64 {
+        if self.exact { self.counted(*link).error_ratio(average_w) } else { link.error_ratio(average_w) }
+    }
+
+    /// The thresholds at an average power in W, as signal currents in A, with the statistics that were asked for.
+    pub fn thresholds_a(&self, link: &Link, average_w: f64) -> Vec<f64> {
+        if !self.exact {
+            return decide(&link.levels(average_w), link.threshold).thresholds_a;
+        }
+        let counted = self.counted(*link);
+        let counts = counted.counts(average_w);
+        let thresholds = counted.decide(&counts).thresholds;
+        thresholds.into_iter().map(|electrons| counts.signal_a(electrons)).collect()
+    }
+
+    /// A link of this bench with its electrons counted one by one.
+    pub fn counted(&self, link: Link) -> ExactLink {
+        let ionisation_ratio = match &self.excess_noise {
+            Some(ExcessNoise::McIntyre { ionisation_ratio }) => *ionisation_ratio,
+            // Other laws are refused with exact statistics, and without an avalanche no k matters.
+            _ => 0.0,
+        };
+        ExactLink { link, ionisation_ratio }
     }
 
     /// Whether the detector has an avalanche.
@@ -222,6 +269,19 @@ fn responsivity_a_per_w(detector: &Detector, wavelength_nm: Option<f64>, needs: 
             needs.found(table.at_field(wavelength_nm, pointer, "The detector's responsivity table"))
         }
     }
+}
+
+/// The Q formula is made of two Gaussians; counts have no such form.
+fn counted_exactly(decision: &Decision, needs: &mut Needs) -> bool {
+    let exact = decision.statistics == Statistics::Exact;
+    if exact && decision.threshold == Threshold::Q {
+        let sentence = "The Q formula is Gaussian by definition: exact statistics need the optimum or the midpoint \
+                        threshold; the Q formula was given.";
+        let allowed = Allowed::OneOf(vec!["optimum".to_owned(), "midpoint".to_owned()]);
+        let fault = Fault::new("/decision/threshold", Code::Conflict, Tree::from("q"), sentence);
+        needs.faults.push(Fault { allowed: Some(allowed), ..fault });
+    }
+    exact
 }
 
 fn noise_bandwidth_hz(amplifier: &Amplifier, needs: &mut Needs) -> Option<f64> {

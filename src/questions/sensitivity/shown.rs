@@ -1,5 +1,6 @@
 //! The sensitivity as it is shown: headline, figures, budgets, doubts and notes.
 
+use super::gaussian::GaussianBeside;
 use super::setup::Setup;
 use super::{Answer, LevelAtSensitivity};
 use crate::bench::Bench;
@@ -65,8 +66,10 @@ fn facts(setup: &Setup, answer: &Answer) -> Vec<Fact> {
     }));
     facts.extend(answer.error_ratio.map(|ratio| {
         let textbook = answer.error_ratio_q.map(|q| format!("{} by the textbook Q", scientific(q, 3)));
-        Fact::ratio("Error ratio at that power", ratio).noted(textbook.unwrap_or_default())
+        let beside = answer.gaussian.as_ref().and_then(GaussianBeside::remark).or(textbook);
+        Fact::ratio("Error ratio at that power", ratio).noted(beside.unwrap_or_default())
     }));
+    facts.extend(answer.gaussian.iter().flat_map(GaussianBeside::facts));
     facts.extend(answer.average_power_q_dbm.map(|dbm| {
         Fact::fixed("Sensitivity by the textbook Q", dbm, 2, "dBm").noted("Q = (I₁ − I₀)/(σ₁ + σ₀)")
     }));
@@ -217,7 +220,13 @@ fn doubts(setup: &Setup, answer: &Answer) -> Vec<String> {
             joined(&fixed(dbm, 1), "dBm")
         ));
     }
-    doubts.extend(few_photons(answer));
+    if !setup.exact {
+        doubts.extend(few_photons(answer));
+    } else if answer.gain > 1e4 {
+        doubts.push(
+            "Counting was checked for gains up to 10 000. Compare with the Gaussian model, and check the gain.".to_owned(),
+        );
+    }
     doubts
 }
 
@@ -227,9 +236,28 @@ fn few_photons(answer: &Answer) -> Option<String> {
     let photons = answer.photons_per_bit.filter(|photons| *photons < 20.0 * ideal)?;
     Some(format!(
         "Only {} photons per bit: the Gaussian model is rough there and usually asks for too much light when the zero \
-         is dark. Take it as an estimate and measure.",
+         is dark. Choose exact statistics, or take it as an estimate and measure.",
         significant(photons, 3)
     ))
+}
+
+/// How the noise is modelled.
+fn statistics(setup: &Setup) -> String {
+    if !setup.exact {
+        return "Gaussian noise at each level.".to_owned();
+    }
+    let mut text = "Electrons counted within 1/(2B): a Poisson number of primaries from light and bulk dark current, each \
+                    multiplied with the gain distribution of R. J. McIntyre, IEEE Trans. Electron Devices ED-19, 703 (1972); \
+                    surface dark current as a Poisson number without gain; circuit noise Gaussian. Error ratio by integrating \
+                    the generating function."
+        .to_owned();
+    let receiver = setup.link().receiver;
+    if receiver.rin_per_hz > 0.0 {
+        text += " The source’s intensity noise is taken as Gaussian beside the circuit’s.";
+    } else if receiver.circuit_noise_a == 0.0 {
+        text += " Without circuit noise counts are whole, and so is the threshold: a count that reaches it reads as a one.";
+    }
+    text
 }
 
 fn notes(setup: &Setup, bench: &Bench, answer: &Answer) -> Vec<String> {
@@ -241,7 +269,7 @@ fn notes(setup: &Setup, bench: &Bench, answer: &Answer) -> Vec<String> {
         _ => "The threshold stands where the total error ratio is least, found from both tails.",
     };
     let mut notes = vec![
-        format!("Gaussian noise at each level; symbols equally likely. {threshold}"),
+        format!("{} Symbols equally likely. {threshold}", statistics(setup)),
         "Each level’s noise: 2q(M²F(R·P + R·P_background + I_bulk) + I_surface)B + i² + RIN·(M·R·P)²·B, with B the \
          noise bandwidth. Background light is counted for its noise; its steady current is taken as removed, like the \
          dark current."
