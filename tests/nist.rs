@@ -102,7 +102,8 @@ fn digits(got: f64, wanted: f64) -> f64 {
 #[test]
 fn all_nine_certified_sets_are_met_from_both_starts() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/nist");
-    let mut paths: Vec<_> = std::fs::read_dir(folder).expect("the folder").map(|f| f.expect("a file").path()).collect();
+    let mut paths: Vec<_> =
+        std::fs::read_dir(folder).expect("the folder").map(|f| f.expect("a file").path()).collect();
     paths.sort();
     assert_eq!(paths.len(), 9);
     let mut misses = Vec::new();
@@ -112,8 +113,7 @@ fn all_nine_certified_sets_are_met_from_both_starts() {
             let least = |pairs: &mut dyn Iterator<Item = (f64, f64)>| {
                 pairs.map(|(got, wanted)| digits(got, wanted)).fold(16.0, f64::min)
             };
-            let parameters =
-                least(&mut found.parameters.iter().copied().zip(set.certified.iter().copied()));
+            let parameters = least(&mut found.parameters.iter().copied().zip(set.certified.iter().copied()));
             let freedom = (set.points.len() - start.len()) as f64;
             let deviation = (found.sum_of_squares / freedom).sqrt();
             let deviations = found.inverse.iter().enumerate().map(|(i, row)| deviation * row[i].sqrt());
@@ -127,8 +127,9 @@ fn all_nine_certified_sets_are_met_from_both_starts() {
                 found.evaluations
             );
             println!("{said}");
-            // Eleven digits are certified; conditioning costs some.
-            if parameters < 8.0 || deviations < 7.0 || sum < 10.0 || digits(deviation, set.residual_deviation) < 10.0 {
+            // Eleven digits are certified, and half a unit of the last may be off.
+            let deviation = digits(deviation, set.residual_deviation);
+            if [parameters, deviations, sum, deviation].iter().any(|digits| *digits < 10.0) {
                 misses.push(said);
             }
         }
