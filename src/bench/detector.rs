@@ -1,5 +1,6 @@
-//! The photodiode: responsivity, dark current, and avalanche gain if it has any.
+//! The photodiode: responsivity, dark current, and its avalanche if it has one.
 
+use super::avalanche::Avalanche;
 use super::field::{Field, Limits};
 use super::points::{self, RESPONSIVITY_LIMITS, ResponsivityPoint};
 use super::reader::Reader;
@@ -43,19 +44,9 @@ pub enum Responsivity {
     },
 }
 
-/// An avalanche region.
-#[derive(Debug, Clone, PartialEq, Serialize)]
-pub struct Avalanche {
-    /// Mean gain M.
-    pub gain: Option<f64>,
-    /// Ratio k of the ionisation coefficients, that of the injected carrier below.
-    pub ionisation_ratio: Option<f64>,
-    /// Gain–bandwidth product, Hz; nothing means no such limit.
-    pub gain_bandwidth_hz: Option<f64>,
-}
-
 const DARK_CURRENT_LIMITS: Limits = Limits::between(0.0, 1.0);
-const BANDWIDTH_LIMITS: Limits = Limits::above(0.0, 1e14);
+/// The limits of a bandwidth, Hz.
+pub const BANDWIDTH_LIMITS: Limits = Limits::above(0.0, 1e14);
 
 /// The numbers of a detector.
 pub const FIELDS: &[Field] = &[
@@ -105,35 +96,7 @@ pub const FIELDS: &[Field] = &[
         usual: "1 to 50 GHz; empty: no limit",
         place: |bench| Some(&mut bench.detector.as_mut()?.bandwidth_hz),
     },
-    Field {
-        pointer: "/detector/avalanche/gain",
-        name: "the gain",
-        kind: &kind::NUMBER,
-        limits: Limits::between(1.0, 1e6),
-        usual: "5 to 20 for InGaAs, 50 to 200 for silicon",
-        place: |bench| Some(&mut avalanche(bench)?.gain),
-    },
-    Field {
-        pointer: "/detector/avalanche/ionisation_ratio",
-        name: "the ionisation ratio",
-        kind: &kind::FRACTION,
-        limits: Limits::between(0.0, 1.0),
-        usual: "0.4 to 0.5 for InGaAs/InP, 0.02 for silicon, 0.7 to 1 for germanium",
-        place: |bench| Some(&mut avalanche(bench)?.ionisation_ratio),
-    },
-    Field {
-        pointer: "/detector/avalanche/gain_bandwidth_hz",
-        name: "the gain–bandwidth product",
-        kind: &kind::FREQUENCY,
-        limits: BANDWIDTH_LIMITS,
-        usual: "50 to 150 GHz for InGaAs; empty: no limit",
-        place: |bench| Some(&mut avalanche(bench)?.gain_bandwidth_hz),
-    },
 ];
-
-fn avalanche(bench: &mut super::Bench) -> Option<&mut Avalanche> {
-    bench.detector.as_mut()?.avalanche.as_mut()
-}
 
 #[derive(Clone, Copy)]
 enum ResponsivityKind {
@@ -154,7 +117,7 @@ impl Detector {
             dark_current_surface_a: number("dark_current_surface_a"),
             bandwidth_hz: number("bandwidth_hz"),
             responsivity: read_responsivity(map.get("responsivity"), reader),
-            avalanche: read_avalanche(map.get("avalanche"), reader),
+            avalanche: Avalanche::read(map.get("avalanche"), reader),
         })
     }
 }
@@ -192,17 +155,4 @@ fn read_responsivity(tree: Option<&Tree>, reader: &mut Reader) -> Option<Respons
         }
         _ => Some(Responsivity::Value { a_per_w: reader.number(map.get(own), &at) }),
     }
-}
-
-fn read_avalanche(tree: Option<&Tree>, reader: &mut Reader) -> Option<Avalanche> {
-    let keys = ["gain", "ionisation_ratio", "gain_bandwidth_hz"];
-    // An avalanche without numbers is still one: its gain is missing, which is not the same as a PIN.
-    let given = tree.filter(|tree| !tree.is_null())?;
-    let map = reader.part(Some(given), "/detector/avalanche", &keys).unwrap_or(given);
-    let mut number = |key: &str| reader.number(map.get(key), &format!("/detector/avalanche/{key}"));
-    Some(Avalanche {
-        gain: number("gain"),
-        ionisation_ratio: number("ionisation_ratio"),
-        gain_bandwidth_hz: number("gain_bandwidth_hz"),
-    })
 }

@@ -79,6 +79,8 @@ pub fn fields() -> impl Iterator<Item = &'static Field> {
         super::source::FIELDS,
         super::path::FIELDS,
         super::detector::FIELDS,
+        super::avalanche::FIELDS,
+        super::bias::FIELDS,
         super::amplifier::FIELDS,
         super::decision::FIELDS,
         super::meter::FIELDS,

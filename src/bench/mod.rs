@@ -4,6 +4,8 @@
 //! question says. Field names end in the unit; the step to SI happens once, where a question reads the bench.
 
 pub mod amplifier;
+pub mod avalanche;
+pub mod bias;
 pub mod decision;
 pub mod detector;
 pub mod field;

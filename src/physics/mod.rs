@@ -17,6 +17,7 @@ pub mod filter;
 pub mod levels;
 pub mod light;
 pub mod meter;
+pub mod miller;
 pub mod noise;
 pub mod quantum_limit;
 pub mod receiver;

@@ -185,3 +185,14 @@ pub const TEMPERATURE_C: Kind = Kind {
     style: Style::Plain,
     units: &[plain("°C"), plain("C"), by("K", false, |kelvin| Ok(kelvin - ZERO_CELSIUS_K))],
 };
+
+/// A difference of temperatures, kept in K.
+pub const TEMPERATURE_STEP: Kind =
+    Kind { unit: "K", style: Style::Plain, units: &[plain("K"), plain("°C"), plain("C")] };
+
+/// A voltage, kept in V.
+pub const VOLTAGE: Kind = Kind { unit: "V", style: Style::Plain, units: &[si("V")] };
+
+/// A change of voltage with temperature, kept in V/K.
+pub const VOLTAGE_PER_KELVIN: Kind =
+    Kind { unit: "V/K", style: Style::Plain, units: &[si("V/K"), si("V/°C"), si("V/C")] };
