@@ -9,6 +9,7 @@
 //! * Decibels are 10 log₁₀ of a ratio of optical powers, also for an extinction ratio.
 
 pub mod avalanche;
+pub mod bias;
 pub mod closed_form;
 pub mod constants;
 pub mod decibel;

@@ -73,7 +73,8 @@ pub fn prefixed(value: f64, unit: &str, figures: usize) -> String {
     format!("{} {prefix}{unit}", place_point(&digits, exponent - power))
 }
 
-/// A value and the half-width of its interval, both to two figures of the half-width: `1.234 ± 0.015 µW`.
+/// A value and the half-width of its interval, both to two figures of the half-width: `1.234 ± 0.015 µW`. A pure number takes no
+/// prefix.
 pub fn plus_minus(value: f64, half_width: f64, unit: &str) -> String {
     if value == 0.0 || half_width <= 0.0 {
         return prefixed(value, unit, 4);
@@ -81,10 +82,20 @@ pub fn plus_minus(value: f64, half_width: f64, unit: &str) -> String {
     // The rounding itself may carry: 0.0996 is shown as 0.100, so its exponent is read after rounding.
     let (_, last) = rounded(half_width, 2);
     let (_, first) = rounded(value, usize::try_from(first_of(value) - last + 2).unwrap_or(1));
-    let (power, prefix) = prefix_for(first.max(last));
+    let (power, prefix) = if unit.is_empty() { (0, "") } else { prefix_for(first.max(last)) };
     let decimals = usize::try_from(power - last + 1).unwrap_or(0);
     let scale = 10f64.powi(-power);
-    format!("{} ± {} {prefix}{unit}", fixed(value * scale, decimals), fixed(half_width * scale, decimals))
+    let both = format!("{} ± {}", fixed(value * scale, decimals), fixed(half_width * scale, decimals));
+    if unit.is_empty() { both } else { format!("{both} {prefix}{unit}") }
+}
+
+/// A value to as many figures as its standard uncertainty makes worth keeping, and two more: for a number that goes on as input.
+pub fn worth_keeping(value: f64, standard: f64) -> f64 {
+    let figures = first_of(value) - first_of(standard) + 3;
+    match usize::try_from(figures.clamp(0, 16)) {
+        Ok(figures) if standard > 0.0 => format!("{value:.figures$e}").parse().unwrap_or(value),
+        _ => value,
+    }
 }
 
 /// The power of ten of the first figure.

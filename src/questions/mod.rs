@@ -1,6 +1,7 @@
 //! What someone came to find out: one question a file, each a pure function of the bench.
 
 pub mod curve;
+pub mod device_fit;
 pub mod needs;
 pub mod reading;
 pub mod sensitivity;
@@ -52,6 +53,13 @@ pub const QUESTIONS: &[Question] = &[
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
     },
+    Question {
+        name: "device_fit",
+        asks: "What is this device?",
+        fields: &["/measurements"],
+        ask: |bench| device_fit::ask(bench).map(|answer| Answer::DeviceFit(Box::new(answer))),
+        numbers: device_fit::numbers,
+    },
 ];
 
 /// An answer to any question.
@@ -62,4 +70,6 @@ pub enum Answer {
     Sensitivity(Box<sensitivity::Answer>),
     /// What a reading is worth.
     Reading(Box<reading::Answer>),
+    /// What a device is.
+    DeviceFit(Box<device_fit::Answer>),
 }

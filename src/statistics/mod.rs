@@ -1,4 +1,5 @@
 //! Statements about chance.
 
+pub mod fit;
 pub mod normal;
 pub mod transfer;
