@@ -81,3 +81,35 @@ pub fn best_gain(link: &IdealLink, ionisation_ratio: f64) -> Option<f64> {
         None
     }
 }
+
+/// As [`best_gain`], for excess noise F = M^x; nothing where more gain always helps (x = 0).
+///
+/// ```text
+/// M^(1+x) = σ_T/(x q Q B_n)
+/// ```
+///
+/// * `link` – Q, B_n and σ_T
+/// * `exponent` – x, ≥ 0
+///
+/// From dP/dM = 0 with the power above. Where circuit noise is so low that any gain harms, 1 is given.
+///
+/// # Example
+///
+/// ```
+/// use leastlight::physics::closed_form::{IdealLink, best_gain_by_power};
+///
+/// let link = IdealLink { q_factor: 6.0, responsivity_a_per_w: 1.0, noise_bandwidth_hz: 1e9, circuit_noise_a: 1e-7 };
+/// // With x = 1, as with k = 1, the square of the gain is the ratio of circuit to shot noise: 104.
+/// assert!((best_gain_by_power(&link, 1.0).unwrap() - 10.2).abs() < 0.01);
+/// ```
+pub fn best_gain_by_power(link: &IdealLink, exponent: f64) -> Option<f64> {
+    debug_assert!(exponent >= 0.0);
+    let shot = ELEMENTARY_CHARGE_C * link.q_factor * link.noise_bandwidth_hz;
+    if link.circuit_noise_a <= exponent * shot {
+        Some(1.0)
+    } else if exponent > 0.0 {
+        Some(libm::pow(link.circuit_noise_a / (exponent * shot), 1.0 / (1.0 + exponent)))
+    } else {
+        None
+    }
+}

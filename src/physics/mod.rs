@@ -14,6 +14,7 @@ pub mod closed_form;
 pub mod constants;
 pub mod decibel;
 pub mod decision;
+pub mod excess_noise;
 pub mod filter;
 pub mod levels;
 pub mod light;

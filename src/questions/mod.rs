@@ -1,5 +1,6 @@
 //! What someone came to find out: one question a file, each a pure function of the bench.
 
+pub mod avalanche_bias;
 pub mod curve;
 pub mod device_fit;
 pub mod needs;
@@ -36,7 +37,21 @@ pub const QUESTIONS: &[Question] = &[
     Question {
         name: "sensitivity",
         asks: "How little light is enough?",
-        fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
+        fields: &[
+            "/source",
+            "/path",
+            "/detector/responsivity",
+            "/detector/dark_current_bulk_a",
+            "/detector/dark_current_surface_a",
+            "/detector/bandwidth_hz",
+            "/detector/avalanche/gain",
+            "/detector/avalanche/ionisation_ratio",
+            "/detector/avalanche/excess_noise",
+            "/detector/avalanche/gain_bandwidth_hz",
+            "/amplifier",
+            "/decision",
+            "/surroundings",
+        ],
         ask: |bench| sensitivity::ask(bench).map(|answer| Answer::Sensitivity(Box::new(answer))),
         numbers: sensitivity::numbers,
     },
@@ -52,6 +67,13 @@ pub const QUESTIONS: &[Question] = &[
         ],
         ask: |bench| reading::ask(bench).map(|answer| Answer::Reading(Box::new(answer))),
         numbers: reading::numbers,
+    },
+    Question {
+        name: "avalanche_bias",
+        asks: "Where should the avalanche bias sit?",
+        fields: &["/source", "/path", "/detector", "/amplifier", "/decision", "/surroundings"],
+        ask: |bench| avalanche_bias::ask(bench).map(|answer| Answer::AvalancheBias(Box::new(answer))),
+        numbers: avalanche_bias::numbers,
     },
     Question {
         name: "device_fit",
@@ -70,6 +92,8 @@ pub enum Answer {
     Sensitivity(Box<sensitivity::Answer>),
     /// What a reading is worth.
     Reading(Box<reading::Answer>),
+    /// Where the avalanche bias should sit.
+    AvalancheBias(Box<avalanche_bias::Answer>),
     /// What a device is.
     DeviceFit(Box<device_fit::Answer>),
 }

@@ -158,3 +158,10 @@ pub const OVERLOAD: Caution = Caution {
     sentence: "The power here is above 1 mW: it may overload or destroy a receiver. Check the detector's \
                damage limit and put an attenuator in first.",
 };
+
+/// What light does at full gain.
+pub const OVERLOAD_CURRENT: Caution = Caution {
+    about: "Overload current",
+    sentence: "At full gain a burst of light becomes a current that can destroy an avalanche photodiode before a hand \
+               moves. Set the supply's current limit first, raise the bias slowly, and begin with the light attenuated.",
+};

@@ -72,15 +72,17 @@ fn power_range_dbm(setup: &Setup, link: &Link, answer: &Answer) -> (f64, f64) {
 }
 
 fn sensitivity_against_gain(setup: &Setup, answer: &Answer) -> Option<Curve> {
-    setup.ionisation_ratio?;
+    if !setup.is_avalanche() {
+        return None;
+    }
     let best = answer.best_gain.as_ref().and_then(|best| best.gain);
-    let most = (5.0 * setup.gain.max(best.unwrap_or(setup.gain))).max(30.0);
+    let most = setup.reach((5.0 * setup.gain.max(best.unwrap_or(setup.gain))).max(30.0));
     let dbm_at = |gain: f64| {
         least_average_power_w(&setup.link_at(gain), setup.target)
             .ok()
             .map(|power_w| (gain, dbm_from_watt(power_w)))
     };
-    let places = evenly(0.0, libm::log(most), GAIN_POINTS).map(|ln_gain| libm::exp(ln_gain).max(1.0));
+    let places = evenly(0.0, libm::log(most), GAIN_POINTS).map(|ln_gain| libm::exp(ln_gain).clamp(1.0, most));
     let (x, y): (Vec<f64>, Vec<f64>) = places.filter_map(dbm_at).unzip();
     if x.is_empty() {
         return None;

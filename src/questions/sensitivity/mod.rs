@@ -1,23 +1,20 @@
 //! How little light is enough?
 
 mod curves;
-mod setup;
-mod shown;
+pub(in crate::questions) mod setup;
+pub(in crate::questions) mod shown;
 
 use super::curve::Curve;
 use super::shown::Shown;
 use crate::bench::Bench;
 use crate::bench::decision::Threshold as Rule;
-use crate::bench::source::Format;
 use crate::fault::Faults;
-use crate::physics::closed_form::{self, IdealLink};
 use crate::physics::decibel::{dbm_from_watt, watt_from_dbm};
 use crate::physics::decision::{Threshold, decide, q_factors};
 use crate::physics::levels::modulation_amplitude_w;
 use crate::physics::receiver::Noise;
 use crate::physics::sensitivity::{BestGain, Link, NoPower, best_gain, least_average_power_w};
 use crate::physics::{light, quantum_limit};
-use crate::statistics::normal::upper_tail_quantile;
 use serde::Serialize;
 use setup::Setup;
 
@@ -39,7 +36,7 @@ pub struct Answer {
     pub photons_per_bit: Option<f64>,
     /// Mean gain M.
     pub gain: f64,
-    /// McIntyre's excess noise factor F at that gain.
+    /// The excess noise factor F at that gain.
     pub excess_noise_factor: f64,
     /// Noise bandwidth, Hz.
     pub noise_bandwidth_hz: f64,
@@ -221,13 +218,17 @@ fn ideal_counter(setup: &Setup) -> QuantumLimit {
 }
 
 /// Where the search for the best gain ends: beyond any avalanche photodiode.
-const MOST_GAIN: f64 = 1e6;
+pub(in crate::questions) const MOST_GAIN: f64 = 1e6;
 
 fn find_best_gain(setup: &Setup, here_dbm: Option<f64>) -> Option<BestGainFound> {
-    setup.ionisation_ratio?;
-    let (gain, power_w) = match best_gain(|gain| setup.link_at(gain), setup.target, MOST_GAIN) {
+    if !setup.is_avalanche() {
+        return None;
+    }
+    let reach = setup.reach(MOST_GAIN);
+    let (gain, power_w) = match best_gain(|gain| setup.link_at(gain), setup.target, reach) {
         BestGain::At { gain, power_w } => (Some(gain), power_w),
-        BestGain::NoUpperEnd { power_w } => (None, power_w),
+        // A table of noise ends before gain stops to help: its end is the best that is known.
+        BestGain::NoUpperEnd { power_w } => (Some(reach).filter(|reach| *reach < MOST_GAIN), power_w),
         BestGain::None => return None,
     };
     let best_dbm = dbm_from_watt(power_w);
@@ -235,25 +236,12 @@ fn find_best_gain(setup: &Setup, here_dbm: Option<f64>) -> Option<BestGainFound>
         gain,
         average_power_dbm: best_dbm,
         improvement_db: here_dbm.map(|here_dbm| here_dbm - best_dbm),
-        closed_form_gain: closed_form_gain(setup),
+        closed_form_gain: setup.closed_form_gain(),
     })
 }
 
-fn closed_form_gain(setup: &Setup) -> Option<f64> {
-    let receiver = setup.link().receiver;
-    let ideal = IdealLink {
-        q_factor: upper_tail_quantile(setup.target),
-        responsivity_a_per_w: receiver.responsivity_a_per_w,
-        noise_bandwidth_hz: receiver.noise_bandwidth_hz,
-        circuit_noise_a: receiver.circuit_noise_a,
-    };
-    match setup.format {
-        Format::Nrz => closed_form::best_gain(&ideal, setup.ionisation_ratio?),
-        Format::Pam4 => None,
-    }
-}
-
-fn none_because(why: &NoPower, setup: &Setup) -> NoneBecause {
+/// Why no power reaches the target.
+pub(in crate::questions) fn none_because(why: &NoPower, setup: &Setup) -> NoneBecause {
     use crate::quantity::write::{prefixed, scientific};
     let target = scientific(setup.target, 3);
     match why {

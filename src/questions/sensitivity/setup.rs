@@ -2,17 +2,21 @@
 
 use crate::bench::Bench;
 use crate::bench::amplifier::{Amplifier, CircuitNoise};
+use crate::bench::avalanche::{Avalanche, ExcessNoise as NoiseLaw};
 use crate::bench::detector::{Detector, Responsivity};
 use crate::bench::source::Format;
 use crate::fault::{Code, Fault, Faults};
+use crate::physics::closed_form::{self, IdealLink};
 use crate::physics::constants::ZERO_CELSIUS_K;
 use crate::physics::decibel::ratio_from_db;
+use crate::physics::excess_noise::{ExcessNoise, FactorTable};
 use crate::physics::filter::noise_bandwidth_ratio;
 use crate::physics::receiver::Receiver;
 use crate::physics::sensitivity::Link;
 use crate::physics::{avalanche, light, noise};
 use crate::questions::needs::Needs;
 use crate::questions::spectral::Spectral;
+use crate::statistics::normal::upper_tail_quantile;
 use crate::tree::Tree;
 
 /// A receiver and what is asked of it, in SI units.
@@ -20,8 +24,8 @@ use crate::tree::Tree;
 pub struct Setup {
     /// Everything but the gain; see [`Setup::link`].
     base: Link,
-    /// Ionisation ratio, for an avalanche detector.
-    pub ionisation_ratio: Option<f64>,
+    /// Excess noise, for an avalanche detector.
+    pub excess_noise: Option<ExcessNoise>,
     /// Mean gain; 1 for a PIN.
     pub gain: f64,
     /// Detector bandwidth at unit gain and gain–bandwidth product, Hz, as far as given.
@@ -45,6 +49,18 @@ pub struct Setup {
 impl Setup {
     /// Reads all that the sensitivity needs.
     pub fn new(bench: &Bench) -> Result<Setup, Faults> {
+        Setup::read(bench, |gain, needs| needs.number(gain, "/detector/avalanche/gain"))
+    }
+
+    /// The same where the bench's own gain is not asked for; without one it is 1.
+    pub fn at_any_gain(bench: &Bench) -> Result<Setup, Faults> {
+        Setup::read(bench, |_, _| Some(1.0))
+    }
+
+    fn read(
+        bench: &Bench,
+        mut wanted: impl FnMut(Option<f64>, &mut Needs) -> Option<f64>,
+    ) -> Result<Setup, Faults> {
         let mut needs = Needs::default();
         let source = needs.part(&bench.source, "/source", "A source is needed: its format and wavelength.");
         let detector = needs.part(&bench.detector, "/detector", "A detector is needed.");
@@ -58,9 +74,18 @@ impl Setup {
         let noise_bandwidth = amplifier.and_then(|part| noise_bandwidth_hz(part, &mut needs));
         let circuit = amplifier.and_then(|part| circuit_noise_a(part, bench, noise_bandwidth, &mut needs));
         let avalanche = detector.and_then(|part| part.avalanche.as_ref());
-        let gain = avalanche.map(|part| needs.number(part.gain, "/detector/avalanche/gain"));
-        let ratio =
-            avalanche.map(|part| needs.number(part.ionisation_ratio, "/detector/avalanche/ionisation_ratio"));
+        let gain = avalanche.map(|part| wanted(part.gain, &mut needs));
+        let noise = avalanche.map(|part| excess_noise(part, &mut needs));
+        if let (Some(Some(gain)), Some(Some(noise))) = (gain, &noise)
+            && gain > noise.reach()
+        {
+            let sentence = format!(
+                "The table of excess noise ends at a gain of {}; {gain} lies outside, and nothing is guessed beyond a table.",
+                noise.reach()
+            );
+            let given = Tree::Number(gain);
+            needs.faults.push(Fault::new("/detector/avalanche/gain", Code::Range, given, &sentence));
+        }
         let made = (|| {
             let (source, detector, amplifier, decision) = (source?, detector?, amplifier?, decision?);
             let loss_db = bench.path.as_ref().and_then(|path| path.loss_db).unwrap_or(0.0);
@@ -83,7 +108,7 @@ impl Setup {
                     extinction_ratio: source.extinction_ratio_db.map_or(f64::INFINITY, ratio_from_db),
                     threshold: decision.threshold.into(),
                 },
-                ionisation_ratio: ratio.flatten(),
+                excess_noise: noise.flatten(),
                 gain: gain.map_or(Some(1.0), |gain| gain)?,
                 detector_bandwidth_hz: detector.bandwidth_hz,
                 gain_bandwidth_hz: avalanche.and_then(|part| part.gain_bandwidth_hz),
@@ -98,14 +123,46 @@ impl Setup {
         needs.all(made)
     }
 
-    /// The link at another gain than the bench's. Without an avalanche there is none but 1.
+    /// Whether the detector has an avalanche.
+    pub fn is_avalanche(&self) -> bool {
+        self.excess_noise.is_some()
+    }
+
+    /// The link at another gain than the bench's, within the reach of its excess noise. Without an avalanche there is none
+    /// but 1.
     pub fn link_at(&self, gain: f64) -> Link {
         let mut link = self.base;
-        if let Some(ratio) = self.ionisation_ratio {
+        if let Some(noise) = &self.excess_noise {
             link.receiver.gain = gain;
-            link.receiver.excess_noise_factor = avalanche::excess_noise_factor(gain, ratio);
+            link.receiver.excess_noise_factor = noise.factor(gain);
         }
         link
+    }
+
+    /// The highest gain at which the excess noise is known, or `most`.
+    pub fn reach(&self, most: f64) -> f64 {
+        self.excess_noise.as_ref().map_or(most, |noise| noise.reach().min(most))
+    }
+
+    /// The best gain by the textbook's closed form; nothing where it has no upper end, for measured excess noise, and with
+    /// more than two levels.
+    pub fn closed_form_gain(&self) -> Option<f64> {
+        let receiver = &self.base.receiver;
+        let ideal = IdealLink {
+            q_factor: upper_tail_quantile(self.target),
+            responsivity_a_per_w: receiver.responsivity_a_per_w,
+            noise_bandwidth_hz: receiver.noise_bandwidth_hz,
+            circuit_noise_a: receiver.circuit_noise_a,
+        };
+        match (self.format, self.excess_noise.as_ref()?) {
+            (Format::Pam4, _) | (_, ExcessNoise::Table(_)) => None,
+            (Format::Nrz, ExcessNoise::McIntyre { ionisation_ratio }) => {
+                closed_form::best_gain(&ideal, *ionisation_ratio)
+            }
+            (Format::Nrz, ExcessNoise::Power { exponent }) => {
+                closed_form::best_gain_by_power(&ideal, *exponent)
+            }
+        }
     }
 
     /// The link on the bench.
@@ -120,6 +177,31 @@ impl Setup {
             (Some(unit_gain), None) => Some(unit_gain),
             (None, Some(product)) => Some(product / gain),
             (None, None) => None,
+        }
+    }
+}
+
+fn excess_noise(part: &Avalanche, needs: &mut Needs) -> Option<ExcessNoise> {
+    const AT: &str = "/detector/avalanche/excess_noise";
+    match &part.excess_noise {
+        NoiseLaw::Mcintyre => {
+            let ratio = needs.number(part.ionisation_ratio, "/detector/avalanche/ionisation_ratio");
+            Some(ExcessNoise::McIntyre { ionisation_ratio: ratio? })
+        }
+        NoiseLaw::Power { exponent } => {
+            let exponent = needs.number(*exponent, &format!("{AT}/exponent"));
+            Some(ExcessNoise::Power { exponent: exponent? })
+        }
+        NoiseLaw::Table { points } => {
+            let pairs: Vec<(f64, f64)> = points.iter().map(|point| (point.gain, point.factor)).collect();
+            if pairs.iter().all(|(gain, _)| *gain == 1.0) {
+                let sentence = "The measured excess noise is needed: its factor at a gain above 1 at least.";
+                needs.faults.push(Fault::missing(&format!("{AT}/points"), sentence));
+                return None;
+            }
+            let sentence = "The gains of the excess noise table lie too close for a curve through them.";
+            let fault = |_| Fault::new(&format!("{AT}/points"), Code::Conflict, Tree::Null, sentence);
+            needs.found(FactorTable::new(&pairs).map_err(fault)).map(ExcessNoise::Table)
         }
     }
 }

@@ -5,6 +5,7 @@ use super::{Answer, LevelAtSensitivity};
 use crate::bench::Bench;
 use crate::bench::decision::Threshold;
 use crate::bench::source::Format;
+use crate::physics::excess_noise::ExcessNoise;
 use crate::physics::receiver::Noise;
 use crate::quantity::write::{brief, fixed, prefixed, scientific, significant};
 use crate::questions::shown::{
@@ -94,7 +95,7 @@ fn thresholds(answer: &Answer) -> Vec<Fact> {
 }
 
 fn gains(setup: &Setup, answer: &Answer) -> Vec<Fact> {
-    if setup.ionisation_ratio.is_none() {
+    if !setup.is_avalanche() {
         return Vec::new();
     }
     let factor = significant(answer.excess_noise_factor, 4);
@@ -103,7 +104,9 @@ fn gains(setup: &Setup, answer: &Answer) -> Vec<Fact> {
         let there = format!("{} dBm", fixed(best.average_power_dbm, 2));
         let better = best.improvement_db.map(|db| format!(", {} dB better", fixed(db.max(0.0), 2)));
         let closed = best.closed_form_gain.map(|gain| format!("; closed form {}", significant(gain, 3)));
-        let note = format!("{there}{}{}", better.unwrap_or_default(), closed.unwrap_or_default());
+        let end = best.gain.is_some_and(|gain| gain == setup.reach(f64::INFINITY));
+        let end = if end { ", where the table of excess noise ends" } else { "" };
+        let note = format!("{there}{}{}{end}", better.unwrap_or_default(), closed.unwrap_or_default());
         match best.gain {
             Some(gain) => Fact::number("Best gain", gain).noted(note),
             None => Fact {
@@ -160,9 +163,10 @@ fn causes(noise: &Noise) -> [(&'static str, f64); 6] {
     ]
 }
 
-fn cautions(setup: &Setup, bench: &Bench) -> Vec<Caution> {
+/// What can hurt at such a receiver.
+pub(in crate::questions) fn cautions(setup: &Setup, bench: &Bench) -> Vec<Caution> {
     let mut cautions = vec![INVISIBLE_LIGHT, GLASS];
-    if setup.ionisation_ratio.is_some() {
+    if setup.is_avalanche() {
         cautions.push(BIAS_VOLTAGE);
     }
     let launched_dbm = bench.source.as_ref().and_then(|source| source.average_power_dbm);
@@ -242,16 +246,8 @@ fn notes(setup: &Setup, bench: &Bench, answer: &Answer) -> Vec<String> {
             .to_owned(),
         "No intersymbol interference, jitter or reflections are counted; the eye is open.".to_owned(),
     ];
-    if setup.ionisation_ratio.is_some() {
-        notes.push(
-            "The closed form of the best gain, k·M² = σ/(q·Q·B) + k − 1, is that of a dark zero without dark current \
-             and intensity noise."
-                .to_owned(),
-        );
-        notes.push(
-            "Excess noise F = kM + (1 − k)(2 − 1/M): R. J. McIntyre, IEEE Trans. Electron Devices ED-13, 164 (1966)."
-                .to_owned(),
-        );
+    if setup.is_avalanche() {
+        notes.extend(excess_noise_notes(setup));
     }
     if setup.format == Format::Pam4 {
         notes.push("Four equally spaced levels, Gray coded; all tails of all levels are counted.".to_owned());
@@ -264,4 +260,28 @@ fn notes(setup: &Setup, bench: &Bench, answer: &Answer) -> Vec<String> {
         );
     }
     notes
+}
+
+/// By which method the excess noise and the closed form of the best gain are had.
+pub(in crate::questions) fn excess_noise_notes(setup: &Setup) -> Vec<String> {
+    let of = "is that of a dark zero without dark current and intensity noise.";
+    let (noise, closed) = match &setup.excess_noise {
+        None => return Vec::new(),
+        Some(ExcessNoise::McIntyre { .. }) => (
+            "Excess noise F = kM + (1 − k)(2 − 1/M): R. J. McIntyre, IEEE Trans. Electron Devices ED-13, 164 (1966).",
+            Some("k·M² = σ/(q·Q·B) + k − 1"),
+        ),
+        Some(ExcessNoise::Power { .. }) => (
+            "Excess noise F = M^x, an approximation of common practice: good to a few per cent near the gain at which x \
+             was found.",
+            Some("M^(1 + x) = σ/(x·q·Q·B)"),
+        ),
+        Some(ExcessNoise::Table(_)) => (
+            "Excess noise from the table, interpolated in ln F against ln M without overshoot; F = 1 at gain 1. Beyond \
+             the table nothing is guessed.",
+            None,
+        ),
+    };
+    let closed = closed.map(|formula| format!("The closed form of the best gain, {formula}, {of}"));
+    closed.into_iter().chain([noise.to_owned()]).collect()
 }
