@@ -1,5 +1,6 @@
 //! What the cases in `tests/published/` may ask for, by name.
 
+mod device;
 mod door;
 mod light;
 mod mathematics;
@@ -10,5 +11,5 @@ use crate::support::cases::Computation;
 
 /// Everything that a case may ask for.
 pub fn all() -> Vec<(&'static str, Computation)> {
-    [door::ALL, light::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
+    [device::ALL, door::ALL, light::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
 }
