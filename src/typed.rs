@@ -1,12 +1,15 @@
 //! A bench as it was typed: texts for numbers, pasted cells for tables.
 
 use crate::bench::Bench;
+use crate::bench::avalanche::ExcessNoise;
+use crate::bench::bias::GainLaw;
 use crate::bench::detector::Responsivity;
 use crate::bench::reader::Reader;
 use crate::fault::{Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::record::{
-    self, Choices, Reading, read_certificate, read_responsivity, read_spectrum, write_certificate_points,
+    self, Choices, Reading, read_certificate, read_gains, read_noise_factors, read_responsivity,
+    read_spectrum, write_certificate_points, write_gain_points, write_noise_factor_points,
     write_responsivity_points, write_spectrum_points,
 };
 use crate::tree::Tree;
@@ -70,6 +73,8 @@ struct Place {
 const PLACES: &[Place] = &[
     Place { pointer: "/source/spectrum", read: spectrum, only_points: false },
     Place { pointer: "/detector/responsivity", read: responsivity, only_points: false },
+    Place { pointer: "/detector/avalanche/excess_noise", read: noise_factors, only_points: false },
+    Place { pointer: "/detector/avalanche/bias", read: gains, only_points: false },
     Place { pointer: "/meter/typical_curve", read: responsivity, only_points: true },
     Place { pointer: "/meter/certificate", read: certificate, only_points: false },
 ];
@@ -87,6 +92,18 @@ fn spectrum(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
     let rows = points.map(|point| row(&[("wavelength_nm", point.wavelength_nm), ("value", point.value)]));
     let entries = vec![("unit", Tree::from(table.unit.word())), ("points", Tree::List(rows.collect()))];
     Ok(Pasted { entries, reading: table.reading })
+}
+
+fn gains(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
+    let table = read_gains(text, choices)?;
+    let rows = table.points.iter().map(|point| row(&[("bias_v", point.bias_v), ("gain", point.gain)]));
+    Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
+}
+
+fn noise_factors(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
+    let table = read_noise_factors(text, choices)?;
+    let rows = table.points.iter().map(|point| row(&[("gain", point.gain), ("factor", point.factor)]));
+    Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
 }
 
 fn certificate(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
@@ -150,6 +167,7 @@ pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
     };
     let meter = bench.meter.as_ref();
     let detector = bench.detector.as_ref().and_then(|detector| detector.responsivity.as_ref());
+    let avalanche = bench.detector.as_ref().and_then(|detector| detector.avalanche.as_ref());
     let spectrum = bench.source.as_ref().and_then(|source| source.spectrum.as_ref());
     match (pointer, detector) {
         ("/source/spectrum", _) => spectrum.map_or_else(String::new, |spectrum| {
@@ -157,6 +175,16 @@ pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
         }),
         ("/detector/responsivity", Some(Responsivity::Table { points })) => {
             write_responsivity_points(points, mark)
+        }
+        ("/detector/avalanche/excess_noise", _) => match avalanche.map(|part| &part.excess_noise) {
+            Some(ExcessNoise::Table { points }) => write_noise_factor_points(points, mark),
+            _ => String::new(),
+        },
+        ("/detector/avalanche/bias", _) => {
+            match avalanche.and_then(|part| part.bias.as_ref()).map(|bias| &bias.gain_law) {
+                Some(GainLaw::Table { points }) => write_gain_points(points, mark),
+                _ => String::new(),
+            }
         }
         ("/meter/typical_curve", _) => meter
             .and_then(|meter| meter.typical_curve.as_ref())

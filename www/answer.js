@@ -2,6 +2,7 @@
 
 import { h } from "./dom.js";
 import { copy } from "./copy.js";
+import { csvOf, fileName, save } from "./files.js";
 import { marked } from "./numbers.js";
 import { chartFigure } from "./chart/figure.js";
 
@@ -146,7 +147,12 @@ function tableView(table, mark) {
       "div",
       { class: "section-head" },
       h("h3", {}, table.title),
-      h("button", { type: "button", class: "quiet", click: () => copy(tsv, `the table “${table.title}”`) }, "Copy table"),
+      h(
+        "div",
+        { class: "tools" },
+        h("button", { type: "button", class: "quiet", click: () => copy(tsv, `the table “${table.title}”`) }, "Copy table"),
+        h("button", { type: "button", class: "quiet", click: () => save(`${fileName(table.title)}.csv`, "text/csv", csvOf(table, mark)) }, "Save CSV"),
+      ),
     ),
     h(
       "div",

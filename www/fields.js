@@ -94,6 +94,13 @@ export function showAlternatives(texts) {
   }
 }
 
+/** Opens the boxes that are there for a question. @param {string} question */
+export function openFor(question) {
+  for (const box of /** @type {NodeListOf<HTMLDetailsElement>} */ (form().querySelectorAll("details[data-open-for]"))) {
+    box.open = box.dataset.openFor === question;
+  }
+}
+
 /** Marks what the question does not read. @param {string[]} pointers */
 export function showUse(pointers) {
   for (const input of inputs()) input.closest(".field, .table-input")?.classList.toggle("idle", !used(input.name, pointers));
@@ -105,8 +112,9 @@ export function showUse(pointers) {
 
 /** @param {string} name @param {string[]} pointers */
 function used(name, pointers) {
-  const pointer = name === DETECTOR_TYPE ? "/detector/avalanche" : name;
-  return pointers.some((field) => under(pointer, field));
+  // What decides whether there is an avalanche is used where any number of one is.
+  if (name === DETECTOR_TYPE) return pointers.some((field) => under(field, "/detector/avalanche") || under("/detector/avalanche", field));
+  return pointers.some((field) => under(name, field));
 }
 
 /** @param {string} pointer */
@@ -187,6 +195,10 @@ export function showFaults(faults, all, texts) {
     place.hidden = !found;
     place.classList.toggle("missing", !!found?.faults.every(({ code }) => code === "missing"));
     setText(place, found ? [...new Set(found.faults.map(({ sentence }) => sentence))].join(" ") : "");
+  }
+  // A fault within a closed box would not be seen.
+  for (const place of places.keys()) {
+    for (let box = place.closest("details"); box; box = box.parentElement?.closest("details") ?? null) box.open = true;
   }
   const wrong = new Map([...places.values()].map(({ input, faults: own }) => [input, own]));
   for (const input of inputs()) describe(input, wrong.get(input));

@@ -1,6 +1,7 @@
 /** Files in and out, with nothing but what every browser offers from disk. */
 
 import { h, inputById } from "./dom.js";
+import { marked } from "./numbers.js";
 
 /** @param {string} name @param {string} type @param {string} text */
 export function save(name, type, text) {
@@ -74,4 +75,19 @@ export function takesDrops(place, use) {
 export function fileName(title) {
   const plain = title.normalize("NFKD").replace(/[^\w\s-]/g, "").trim().replace(/\s+/g, "-").toLowerCase();
   return plain || "untitled";
+}
+
+/**
+ * A table as a spreadsheet opens it: cells parted by commas, or by semicolons where the comma is the decimal mark.
+ *
+ * @param {import("./door.js").Table} table
+ * @param {import("./door.js").Mark} mark
+ */
+export function csvOf({ columns, rows }, mark) {
+  const part = mark === "comma" ? ";" : ",";
+  // A spreadsheet takes the true minus sign for a letter, and a dash for a value.
+  const plain = (/** @type {string} */ cell) => (cell === "–" ? "" : marked(cell, mark).replaceAll("−", "-"));
+  const quoted = (/** @type {string} */ cell) => (/[",;\r\n]/.test(cell) ? `"${cell.replaceAll('"', '""')}"` : cell);
+  const line = (/** @type {string[]} */ cells) => cells.map((cell) => quoted(plain(cell))).join(part);
+  return `${[columns, ...rows].map(line).join("\r\n")}\r\n`;
 }

@@ -5,7 +5,7 @@ import { choicesOf, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { addNotes, controls, fill, firstChoices, labelOf, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
+import { addNotes, controls, fill, firstChoices, labelOf, openFor, ownerOf, showAlternatives, showFaults, showUnderstood, showUse } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
 import { marked } from "./numbers.js";
 import { load, save } from "./store.js";
@@ -35,6 +35,8 @@ export const state = { texts: {}, history: emptyHistory(), question: questions[0
 const good = new Map();
 /** What a file could not be read for. @type {string[]} */
 let fileFaults = [];
+/** The question for which boxes were opened last; from then on they are the person's. */
+let opened = "";
 
 /** The store can be written by any page from disk; what is not of our making is left alone. @param {any} found */
 function soundState(found) {
@@ -65,6 +67,7 @@ export function update() {
   showUnderstood(texts, understood);
   showTables(texts, tables, changeChoices);
   showUse(question.fields);
+  if (question.name !== opened) openFor((opened = question.name));
   if (answer) {
     good.set(question.name, answer);
     byId("banner").hidden = true;

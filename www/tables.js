@@ -19,7 +19,18 @@ const ROLES = {
   correction_factor: { says: "correction factor, true over shown", units: ["1", "%", "dB"] },
   deviation: { says: "deviation of the reading", units: ["%", "dB"] },
   expanded: { says: "expanded uncertainty", units: ["%", "dB", "A/W", "mA/W", "1"] },
+  voltage: { says: "bias", units: ["V", "mV"] },
+  gain: { says: "gain", units: ["1"] },
+  excess_noise_factor: { says: "excess noise factor", units: ["1"] },
   ignored: { says: "nothing that is read", units: [] },
+};
+
+/** Which roles each kind of table knows. @type {Record<string, string[]>} */
+const READS = {
+  responsivity: ["wavelength", "responsivity", "ignored"],
+  certificate: ["wavelength", "responsivity", "correction_factor", "deviation", "expanded", "ignored"],
+  gains: ["voltage", "gain", "ignored"],
+  noise_factors: ["gain", "excess_noise_factor", "ignored"],
 };
 
 /** Rows named one by one; of more, only how many. */
@@ -89,7 +100,7 @@ function view(reading, choices, current, kind, change) {
 
 /** @param {Reading} reading @param {Record<string, any> | null} choices @param {string} kind @param {(more: Record<string, unknown>) => void} set */
 function columns(reading, choices, kind, set) {
-  const roles = kind === "certificate" ? Object.keys(ROLES) : ["wavelength", "responsivity", "ignored"];
+  const roles = READS[kind] ?? Object.keys(ROLES);
   const names = Object.fromEntries(roles.map((role) => [role, ROLES[role]?.says ?? role]));
   const choose = (/** @type {Column} */ column, /** @type {Partial<Column>} */ to) => {
     const others = /** @type {Column[]} */ (choices?.columns ?? []).filter(({ index }) => index !== column.index);

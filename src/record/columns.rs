@@ -292,6 +292,9 @@ fn words(role: Role) -> &'static str {
         Role::SpectralPower => "power per nm",
         Role::Power => "power",
         Role::Time => "time",
+        Role::Voltage => "bias",
+        Role::Gain => "gain",
+        Role::NoiseFactor => "excess noise factor",
         Role::Detector | Role::Ignored => "column",
     }
 }

@@ -13,6 +13,7 @@ mod columns;
 mod coverage;
 mod date;
 mod dcc;
+mod gains;
 mod layout;
 mod mark;
 mod names;
@@ -32,11 +33,13 @@ pub use certificate::{CertificateTable, read_certificate};
 pub use choices::{Choices, ColumnChoice};
 pub use date::is_date;
 pub use dcc::{BadPoint, DccCertificate, DccQuantity, DccReading, QuantityKind, Taken, read_dcc, write_dcc};
+pub use gains::{GainsTable, NoiseFactorsTable, read_gains, read_noise_factors};
 pub use names::{DecimalMark, Delimiter, Role, Unit};
 pub use reading::{BadRow, Column, Reading};
 pub use responsivity::{ResponsivityTable, read_responsivity};
 pub use spectrum::{SpectrumTable, read_spectrum};
 pub use transfer::{Comparison, ReadBlock, read_comparison};
 pub use write::{
-    number_text, remark, write_certificate_points, write_responsivity_points, write_spectrum_points,
+    number_text, remark, write_certificate_points, write_gain_points, write_noise_factor_points,
+    write_responsivity_points, write_spectrum_points,
 };

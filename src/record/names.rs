@@ -72,6 +72,12 @@ named! {
         Power = "power",
         /// When.
         Time = "time",
+        /// A voltage, such as the bias.
+        Voltage = "voltage",
+        /// The gain of an avalanche.
+        Gain = "gain",
+        /// The excess noise factor of an avalanche.
+        NoiseFactor = "excess_noise_factor",
         /// Nothing that is read.
         Ignored = "ignored",
     }
@@ -118,6 +124,10 @@ named! {
         DbmPerNm = "dBm/nm",
         /// Seconds.
         Second = "s",
+        /// Volts.
+        Volt = "V",
+        /// Millivolts.
+        Millivolt = "mV",
     }
 }
 
@@ -179,13 +189,15 @@ impl Role {
                 &[Unit::Watt, Unit::Milliwatt, Unit::Microwatt, Unit::Nanowatt, Unit::Picowatt, Unit::Dbm]
             }
             Role::Time => &[Unit::Second],
+            Role::Voltage => &[Unit::Volt, Unit::Millivolt],
+            Role::Gain | Role::NoiseFactor => &[Unit::One],
             Role::Detector | Role::Ignored => &[],
         }
     }
 }
 
 impl Unit {
-    /// Recognises a unit of power, of power per nm or of time as it is written in tables; `None` for anything else.
+    /// Recognises a unit of power, of power per nm, of time or of voltage as it is written in tables; `None` for anything else.
     pub(super) fn written_of_power(text: &str) -> Option<Unit> {
         Some(match plain(text)?.as_str() {
             "W" => Unit::Watt,
@@ -200,15 +212,17 @@ impl Unit {
             "nW/nm" | "nW.nm-1" => Unit::NanowattPerNm,
             "dBm/nm" | "dbm/nm" => Unit::DbmPerNm,
             "s" | "sec" => Unit::Second,
+            "V" | "volt" | "Volt" | "volts" | "Volts" => Unit::Volt,
+            "mV" => Unit::Millivolt,
             _ => return None,
         })
     }
 
-    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s; 0 for levels.
+    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s, V; 0 for levels.
     pub(super) fn power_of_ten(self) -> i32 {
         match self {
             Unit::Micrometre => 3,
-            Unit::MilliamperePerWatt | Unit::Milliwatt | Unit::MilliwattPerNm => -3,
+            Unit::MilliamperePerWatt | Unit::Milliwatt | Unit::MilliwattPerNm | Unit::Millivolt => -3,
             Unit::Microwatt | Unit::MicrowattPerNm => -6,
             Unit::Nanowatt | Unit::NanowattPerNm => -9,
             Unit::Picowatt => -12,

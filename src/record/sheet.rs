@@ -124,7 +124,7 @@ impl<'t> Sheet<'t> {
         self.columns.iter().find(|column| column.role == role).copied()
     }
 
-    /// The number of a cell in nm, W, W/nm, s or as a level, with the unit that it was in; a sentence where it is none.
+    /// The number of a cell in nm, W, W/nm, s, V or as a level, with the unit that it was in; a sentence where it is none.
     pub(super) fn number(&self, row: &Row, column: Placed, name: &str) -> Result<(f64, Unit), String> {
         let text = row.cell(column.index);
         if text.is_empty() {
@@ -239,10 +239,13 @@ impl<'t> Sheet<'t> {
         });
         let mut columns: Vec<Placed> = placed.collect();
         for column in columns.iter_mut().filter(|column| column.unit.is_none()) {
-            // A wavelength is in nm and a time in s where nothing else is said; of a power nothing is assumed.
+            // A wavelength is in nm, a time in s and a voltage in V where nothing else is said, and a gain has no unit; of a
+            // power nothing is assumed.
             column.unit = match column.role {
                 Role::Wavelength => Some(Unit::Nanometre),
                 Role::Time => Some(Unit::Second),
+                Role::Voltage => Some(Unit::Volt),
+                Role::Gain | Role::NoiseFactor => Some(Unit::One),
                 _ => None,
             };
         }
@@ -389,6 +392,9 @@ fn noun(role: Role) -> &'static str {
         Role::Detector => "detector",
         Role::Power => "reading",
         Role::Time => "time",
+        Role::Voltage => "bias",
+        Role::Gain => "gain",
+        Role::NoiseFactor => "excess noise factor",
         _ => "value",
     }
 }

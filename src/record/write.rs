@@ -3,6 +3,8 @@
 use super::cell::{Cell, Marks};
 use super::names::DecimalMark;
 use super::words::coverage_factor;
+use crate::bench::avalanche::NoiseFactorPoint;
+use crate::bench::bias::GainPoint;
 use crate::bench::meter::{CertificateForm, CertificatePoint};
 use crate::bench::points::ResponsivityPoint;
 use crate::bench::spectrum::{SpectrumPoint, SpectrumUnit};
@@ -60,6 +62,26 @@ pub fn write_spectrum_points(unit: SpectrumUnit, points: &[SpectrumPoint], mark:
     let mut text = format!("Wavelength / nm\t{power}\n");
     for point in points {
         text += &format!("{}\t{}\n", digits(point.wavelength_nm, mark), digits(point.value, mark));
+    }
+    text
+}
+
+/// Writes measured gains as tab-separated text with a header, to be read back bit by bit by
+/// [`read_gains`](super::read_gains).
+pub fn write_gain_points(points: &[GainPoint], mark: DecimalMark) -> String {
+    let mut text = "Bias / V\tGain\n".to_owned();
+    for point in points {
+        text += &format!("{}\t{}\n", digits(point.bias_v, mark), digits(point.gain, mark));
+    }
+    text
+}
+
+/// Writes measured excess noise factors as tab-separated text with a header, to be read back bit by bit by
+/// [`read_noise_factors`](super::read_noise_factors).
+pub fn write_noise_factor_points(points: &[NoiseFactorPoint], mark: DecimalMark) -> String {
+    let mut text = "Gain\tExcess noise factor\n".to_owned();
+    for point in points {
+        text += &format!("{}\t{}\n", digits(point.gain, mark), digits(point.factor, mark));
     }
     text
 }
