@@ -8,8 +8,9 @@ use crate::bench::reader::Reader;
 use crate::fault::{Fault, Faults};
 use crate::quantity::number::DecimalMark;
 use crate::record::{
-    self, Choices, Reading, read_certificate, read_gains, read_noise_factors, read_responsivity,
-    read_spectrum, write_certificate_points, write_gain_points, write_noise_factor_points,
+    self, BANDWIDTHS, BREAKDOWNS, CURRENTS, Choices, MeasuredKind, NOISES, Reading, read_certificate,
+    read_gains, read_measured, read_noise_factors, read_responsivity, read_spectrum,
+    write_certificate_points, write_gain_points, write_measurements, write_noise_factor_points,
     write_responsivity_points, write_spectrum_points,
 };
 use crate::tree::Tree;
@@ -75,6 +76,18 @@ const PLACES: &[Place] = &[
     Place { pointer: "/detector/responsivity", read: responsivity, only_points: false },
     Place { pointer: "/detector/avalanche/excess_noise", read: noise_factors, only_points: false },
     Place { pointer: "/detector/avalanche/bias", read: gains, only_points: false },
+    Place { pointer: "/measurements/iv", read: |t, c| measured(t, c, &CURRENTS), only_points: false },
+    Place { pointer: "/measurements/noise", read: |t, c| measured(t, c, &NOISES), only_points: false },
+    Place {
+        pointer: "/measurements/bandwidth",
+        read: |t, c| measured(t, c, &BANDWIDTHS),
+        only_points: false,
+    },
+    Place {
+        pointer: "/measurements/breakdown",
+        read: |t, c| measured(t, c, &BREAKDOWNS),
+        only_points: false,
+    },
     Place { pointer: "/meter/typical_curve", read: responsivity, only_points: true },
     Place { pointer: "/meter/certificate", read: certificate, only_points: false },
 ];
@@ -103,6 +116,12 @@ fn gains(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
 fn noise_factors(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
     let table = read_noise_factors(text, choices)?;
     let rows = table.points.iter().map(|point| row(&[("gain", point.gain), ("factor", point.factor)]));
+    Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
+}
+
+fn measured(text: &str, choices: &Choices, what: &MeasuredKind) -> Result<Pasted, Faults> {
+    let table = read_measured(text, choices, what)?;
+    let rows = table.points.iter().map(|point| row(point));
     Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
 }
 
@@ -185,6 +204,9 @@ pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
                 Some(GainLaw::Table { points }) => write_gain_points(points, mark),
                 _ => String::new(),
             }
+        }
+        (pointer, _) if pointer.starts_with("/measurements/") => {
+            bench.measurements.as_ref().map_or_else(String::new, |all| write_measurements(pointer, all, mark))
         }
         ("/meter/typical_curve", _) => meter
             .and_then(|meter| meter.typical_curve.as_ref())

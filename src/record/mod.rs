@@ -16,6 +16,7 @@ mod dcc;
 mod gains;
 mod layout;
 mod mark;
+mod measured;
 mod names;
 mod points;
 mod reading;
@@ -28,12 +29,14 @@ mod time;
 mod transfer;
 mod words;
 mod write;
+mod write_measured;
 
 pub use certificate::{CertificateTable, read_certificate};
 pub use choices::{Choices, ColumnChoice};
 pub use date::is_date;
 pub use dcc::{BadPoint, DccCertificate, DccQuantity, DccReading, QuantityKind, Taken, read_dcc, write_dcc};
 pub use gains::{GainsTable, NoiseFactorsTable, read_gains, read_noise_factors};
+pub use measured::{BANDWIDTHS, BREAKDOWNS, CURRENTS, MeasuredKind, MeasuredTable, NOISES, read_measured};
 pub use names::{DecimalMark, Delimiter, Role, Unit};
 pub use reading::{BadRow, Column, Reading};
 pub use responsivity::{ResponsivityTable, read_responsivity};
@@ -43,3 +46,4 @@ pub use write::{
     number_text, remark, write_certificate_points, write_gain_points, write_noise_factor_points,
     write_responsivity_points, write_spectrum_points,
 };
+pub use write_measured::write_measurements;
