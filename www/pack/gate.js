@@ -8,7 +8,10 @@ import { readFileSync } from "node:fs";
 import { pathToFileURL } from "node:url";
 
 /** Names of vocabularies: they look like addresses, and nothing is ever fetched from them. */
-const VOCABULARIES = /\bhttp:\/\/www\.w3\.org\/(2000\/svg|1999\/xhtml|1999\/xlink|2000\/xmlns\/|XML\/1998\/namespace|1998\/Math\/MathML)(?![\w./-])/g;
+const VOCABULARY = String.raw`\bhttp://www\.w3\.org/(?:2000/svg|1999/xhtml|1999/xlink|2000/xmlns/|2000/09/xmldsig#|XML/1998/namespace|1998/Math/MathML)`;
+const VOCABULARIES = new RegExp(String.raw`${VOCABULARY}(?![\w./-])`, "g");
+/** Inside the core one text stands right behind the other. */
+const VOCABULARIES_IN_CORE = new RegExp(VOCABULARY, "g");
 
 /** Slashes may be missing from an address, but then a quotation mark or an attribute must hold it: a minifier's `a?ws:b` is none. */
 const ADDRESS = /\b(?:https?|wss?|ftp):\/+[\w[]|["'`=]\s*(?:https?|wss?|ftp):[\w[]|["'`(=]\s*\/\/[a-z0-9[]/gi;
@@ -80,9 +83,10 @@ function partsOf(page) {
  * @param {[string, RegExp][]} rules
  * @param {string} text
  * @param {string} where
+ * @param {RegExp} vocabularies
  */
-function search(rules, text, where) {
-    const readable = text.replace(VOCABULARIES, "");
+function search(rules, text, where, vocabularies = VOCABULARIES) {
+    const readable = text.replace(vocabularies, "");
     return rules.flatMap(([what, pattern]) =>
         [...readable.matchAll(pattern)].map((hit) => {
             const near = readable.slice(Math.max(0, hit.index - 30), hit.index + hit[0].length + 50);
@@ -131,7 +135,7 @@ export function faultsOf(page, folders = []) {
         ...search([...EVERYWHERE, ...IN_MARKUP], markup, "the markup"),
         ...styles.flatMap((text) => search([...EVERYWHERE, ...IN_STYLE], text, "a style sheet")),
         ...scripts.flatMap((text) => search([...EVERYWHERE, ...IN_SCRIPT], text, "a script")),
-        ...core.flatMap((text) => search(EVERYWHERE, text, "the core")),
+        ...core.flatMap((text) => search(EVERYWHERE, text, "the core", VOCABULARIES_IN_CORE)),
         ...folders
             .filter((folder) => folder.length > 1 && texts.some((text) => text.includes(`${folder}/`)))
             .map((folder) => `a folder of the building machine: ${folder}`),
