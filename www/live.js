@@ -1,7 +1,7 @@
 /** From what was typed to what is shown: the state of the page, and everything that follows from it. */
 
 import { answerView } from "./answer.js";
-import { choicesOf, textsOf, typed } from "./bench.js";
+import { DETECTOR_TYPE, choicesOf, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
@@ -90,8 +90,10 @@ function showAnswer(question, faults) {
   const owners = [...new Set(faults.map(({ pointer }) => ownerOf(pointer, all, state.texts)?.name ?? pointer))];
   const says = found ? "This is the last good answer. It waits for: " : "To answer, the bench still needs: ";
   if (stale) line.replaceChildren(says, ...joinedBy(faultLinks(faults, owners), ", "), ".");
-  const keepButton = /** @type {HTMLButtonElement | null} */ (document.getElementById("keep"));
-  if (keepButton) keepButton.disabled = stale;
+  for (const id of ["keep", "onto-bench"]) {
+    const button = /** @type {HTMLButtonElement | null} */ (document.getElementById(id));
+    if (button) button.disabled = stale;
+  }
   const mini = byId("mini");
   mini.hidden = !found;
   setText(mini, found ? `${stale ? "Waiting; last: " : ""}${marked(found.shown.headline.figure, state.mark)}` : "");
@@ -160,6 +162,16 @@ export function put(bench, name) {
     table: (/** @type {string} */ pointer) => core.write_table(pointer, bench, state.mark).value ?? "",
   };
   change({ ...firstChoices(), ...textsOf(all, bench, write, firstChoices()) }, null, name);
+}
+
+/** Puts what an answer found onto the bench, as one step. @param {import("./door.js").OntoBench} onto */
+export function putOnto({ name, values }) {
+  const text = (/** @type {string} */ pointer, /** @type {number | string} */ value) =>
+    typeof value === "number" ? core.write_number(pointer, value, state.mark) : value;
+  const avalanche = values.some(({ pointer }) => pointer.startsWith("/detector/avalanche/"));
+  const found = Object.fromEntries(values.map(({ pointer, value }) => [pointer, text(pointer, value)]));
+  change({ ...state.texts, ...found, ...(avalanche && { [DETECTOR_TYPE]: "avalanche" }) }, null, name);
+  say("On the bench; undo takes it back");
 }
 
 /** @param {typeof undone} step @param {string} says */

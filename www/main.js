@@ -8,7 +8,7 @@ import { firstChoices, form, inputOf, labelOf } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
-import { change, put, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { change, goodAnswer, put, putOnto, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
 
@@ -117,7 +117,10 @@ byId("help-close").addEventListener("click", () => help.close());
 addEventListener("hashchange", toHash);
 onReopen(showChooser);
 byId("answer").addEventListener("click", (event) => {
-  if (/** @type {Element} */ (event.target).closest("#keep")) keep();
+  const pressed = /** @type {Element} */ (event.target);
+  if (pressed.closest("#keep")) keep();
+  const onto = goodAnswer()?.onto_bench;
+  if (onto && pressed.closest("#onto-bench")) putOnto(onto);
 });
 
 function toHash() {

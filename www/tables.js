@@ -19,7 +19,12 @@ const ROLES = {
   correction_factor: { says: "correction factor, true over shown", units: ["1", "%", "dB"] },
   deviation: { says: "deviation of the reading", units: ["%", "dB"] },
   expanded: { says: "expanded uncertainty", units: ["%", "dB", "A/W", "mA/W", "1"] },
-  voltage: { says: "bias", units: ["V", "mV"] },
+  voltage: { says: "voltage", units: ["V", "mV"] },
+  dark_current: { says: "dark current", units: ["A", "mA", "µA", "nA", "pA"] },
+  current: { says: "current under light", units: ["A", "mA", "µA", "nA", "pA"] },
+  bandwidth: { says: "bandwidth", units: ["Hz", "kHz", "MHz", "GHz"] },
+  temperature: { says: "temperature", units: ["°C", "K"] },
+  standard_uncertainty: { says: "standard uncertainty", units: ["%", "1", "A", "mA", "µA", "nA", "pA", "V", "mV", "Hz", "kHz", "MHz", "GHz"] },
   gain: { says: "gain", units: ["1"] },
   excess_noise_factor: { says: "excess noise factor", units: ["1"] },
   ignored: { says: "nothing that is read", units: [] },
@@ -31,6 +36,10 @@ const READS = {
   certificate: ["wavelength", "responsivity", "correction_factor", "deviation", "expanded", "ignored"],
   gains: ["voltage", "gain", "ignored"],
   noise_factors: ["gain", "excess_noise_factor", "ignored"],
+  measured_currents: ["voltage", "dark_current", "current", "standard_uncertainty", "ignored"],
+  measured_noise: ["gain", "excess_noise_factor", "standard_uncertainty", "ignored"],
+  measured_bandwidths: ["gain", "bandwidth", "standard_uncertainty", "ignored"],
+  measured_breakdowns: ["temperature", "voltage", "standard_uncertainty", "ignored"],
 };
 
 /** Rows named one by one; of more, only how many. */

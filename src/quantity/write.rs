@@ -89,9 +89,9 @@ pub fn plus_minus(value: f64, half_width: f64, unit: &str) -> String {
     if unit.is_empty() { both } else { format!("{both} {prefix}{unit}") }
 }
 
-/// A value to as many figures as its standard uncertainty makes worth keeping, and two more: for a number that goes on as input.
+/// A value to three figures of its standard uncertainty: for a number that goes on as an input.
 pub fn worth_keeping(value: f64, standard: f64) -> f64 {
-    let figures = first_of(value) - first_of(standard) + 3;
+    let figures = first_of(value) - first_of(standard) + 2;
     match usize::try_from(figures.clamp(0, 16)) {
         Ok(figures) if standard > 0.0 => format!("{value:.figures$e}").parse().unwrap_or(value),
         _ => value,

@@ -33,8 +33,6 @@ pub struct Estimates {
     pub untold: Vec<bool>,
     /// Degrees of freedom of the standard uncertainties: of the residuals, or infinite where their scatter is known.
     pub degrees_of_freedom: f64,
-    /// Points less parameters that are free.
-    pub freedom: usize,
     /// The residuals, formula less measurement, each divided by what weighs it.
     pub residuals: Vec<f64>,
     /// The weight of each point; all 1 but by Huber's rule.
@@ -93,7 +91,7 @@ pub fn estimates(
         held,
         untold: undetermined,
         degrees_of_freedom,
-        freedom,
+
         residuals,
         weights,
         deviation: estimated.map(|estimated| robust.map_or(estimated.sqrt(), |(scale, _)| scale)),

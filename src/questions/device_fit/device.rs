@@ -41,6 +41,8 @@ pub struct DeviceUncertainty {
 pub struct UncertainInput {
     /// Which.
     pub pointer: &'static str,
+    /// What this doubt is called.
+    pub name: &'static str,
     /// Its standard uncertainty, in the unit of the bench.
     pub standard: f64,
     /// Absent where infinite.
@@ -64,7 +66,13 @@ pub fn device(bench: &Bench, answer: &Answer) -> Option<Device> {
             known.push((place, inputs.len()));
             values.push(DeviceValue { pointer, value: Tree::Number(worth_keeping(value, standard)) });
             let standard = worth_keeping(standard, standard);
-            inputs.push(UncertainInput { pointer, standard, degrees_of_freedom: fit.degrees_of_freedom });
+            let name = "fit of the measurements";
+            inputs.push(UncertainInput {
+                pointer,
+                name,
+                standard,
+                degrees_of_freedom: fit.degrees_of_freedom,
+            });
         }
         for (at, (one, one_input)) in known.iter().enumerate() {
             for (other, other_input) in &known[at + 1..] {

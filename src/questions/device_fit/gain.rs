@@ -128,12 +128,12 @@ impl Photocurrents {
         let (count, most_v) = (self.points.len(), self.points.last()?.x);
         let most_a =
             self.points.iter().zip(&self.dark_a).map(|(point, dark)| point.y + dark).fold(0.0, f64::max);
-        let some: Vec<usize> = (0..count).step_by(count.div_ceil(24)).chain([count - 1]).collect();
+        let some: Vec<usize> = (0..count).step_by(count.div_ceil(16)).chain([count - 1]).collect();
         let first_a = self.unity_a.unwrap_or(self.points.first()?.y);
         let mut best: Option<(f64, [f64; 4])> = None;
-        for drop in [0.0, 1e-3, 1e-2, 0.05, 0.2] {
-            for above in [0.85, 0.95, 0.99, 1.002, 1.01, 1.03, 1.1, 1.3, 2.0] {
-                for exponent in [0.5, 1.0, 2.0, 4.0, 8.0] {
+        for drop in [0.0, 3e-3, 0.05] {
+            for above in [0.9, 0.98, 1.002, 1.02, 1.1, 1.4] {
+                for exponent in [0.7, 2.0, 5.0] {
                     let guess = [above * most_v, exponent, drop * most_v / most_a, first_a];
                     let logarithm = |index: &usize| {
                         Some(libm::log(self.points[*index].y / self.gain(guess, *index)?.value))

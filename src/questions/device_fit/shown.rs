@@ -32,8 +32,13 @@ fn determined(answer: &Answer) -> impl Iterator<Item = &Parameter> {
 fn headline(answer: &Answer) -> Headline {
     let told: Vec<(&Parameter, String)> =
         determined(answer).filter_map(|parameter| Some((parameter, figure(parameter)?))).collect();
-    // The photocurrent says of the light what the others say of the device.
-    let mut own = told.iter().filter(|(parameter, _)| parameter.name != "unity_gain_current_a");
+    // The photocurrent is the light's as much as the device's, and one breakdown voltage is enough.
+    let by_current = told.iter().any(|(parameter, _)| parameter.name == "breakdown_v");
+    let mut own = told.iter().filter(|(parameter, _)| match parameter.name {
+        "unity_gain_current_a" => false,
+        "breakdown_by_temperature_v" => !by_current,
+        _ => true,
+    });
     let Some((first, figure)) = own.next() else {
         return Headline {
             figure: "Not determined".to_owned(),
