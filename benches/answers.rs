@@ -32,6 +32,21 @@ fn sensitivity_four_levels(bencher: Bencher) {
     bencher.bench(|| door::ask("sensitivity", black_box(&bench), &Tree::Null));
 }
 
+/// The bias with its four curves, of which one is a search for the best gain at each symbol rate, and its table.
+#[divan::bench]
+fn avalanche_bias(bencher: Bencher) {
+    let bench = door::demo();
+    bencher.bench(|| door::ask("avalanche_bias", black_box(&bench), &Tree::Null));
+}
+
+/// The same with four levels.
+#[divan::bench]
+fn avalanche_bias_four_levels(bencher: Bencher) {
+    let mut bench = door::demo();
+    put(&mut bench, "source", "format", Tree::from("pam4"));
+    bencher.bench(|| door::ask("avalanche_bias", black_box(&bench), &Tree::Null));
+}
+
 /// A reading with its curve and table.
 #[divan::bench]
 fn reading(bencher: Bencher) {

@@ -85,6 +85,11 @@ fn wrong_measurements_are_refused_where_they_are_wrong() {
 }
 
 #[test]
+fn wrong_benches_for_the_bias_are_refused_where_they_are_wrong() {
+    run(include_str!("faults/avalanche_bias.toml"));
+}
+
+#[test]
 fn numbers_that_are_none_do_not_pass_as_absent() {
     for number in [f64::NAN, f64::INFINITY, f64::NEG_INFINITY] {
         let mut bench = good_bench();

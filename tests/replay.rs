@@ -37,6 +37,22 @@ fn benches() -> Vec<Value> {
         ],
     );
     vary(
+        "/detector/avalanche",
+        &[
+            json!({ "gain": 7, "excess_noise": { "kind": "power", "exponent": 0.71 }, "gain_bandwidth_hz": 9.3e9,
+                    "bias": { "kind": "miller", "breakdown_v": 43.7, "miller_exponent": 1.77, "series_resistance_ohm": 1e6,
+                              "set_v": 45.1, "breakdown_v_per_k": 0.093, "reference_temperature_c": 22,
+                              "table_from_c": -40, "table_to_c": 85, "table_step_k": 12.5 } }),
+            json!({ "gain": 7, "ionisation_ratio": 0.41,
+                    "excess_noise": { "kind": "table", "points": [
+                        { "gain": 3, "factor": 2.2 }, { "gain": 9, "factor": 4.9 }, { "gain": 28, "factor": 14.1 } ] },
+                    "bias": { "kind": "table", "points": [
+                        { "bias_v": 21, "gain": 1.1 }, { "bias_v": 37.7, "gain": 4.2 }, { "bias_v": 41.2, "gain": 33 } ],
+                        "set_v": 36.6, "series_resistance_ohm": 470 } }),
+        ],
+    );
+    vary("/detector/avalanche/bias/breakdown_v_per_k", &[json!(-4.9), json!(0)]);
+    vary(
         "/amplifier/noise",
         &[
             json!({ "kind": "rms", "current_a": 0 }),
@@ -62,7 +78,7 @@ fn native_answers_are_written_for_the_page_to_repeat() {
     let mut lines = String::new();
     let mut answers = 0;
     for bench in benches() {
-        for question in ["sensitivity", "reading", "device_fit"] {
+        for question in ["sensitivity", "reading", "avalanche_bias", "device_fit"] {
             let tree = Tree::from_json(&bench.to_string()).expect("JSON");
             let options = match question {
                 "sensitivity" => json!({

@@ -52,34 +52,3 @@ pub fn bandwidth_hz(gain: f64, bandwidth_at_unit_gain_hz: f64, gain_bandwidth_hz
     let slowed = gain * bandwidth_at_unit_gain_hz / gain_bandwidth_hz;
     bandwidth_at_unit_gain_hz / libm::hypot(1.0, slowed)
 }
-
-/// The gain at which the detector's −3 dB bandwidth has fallen to B: the inverse of [`bandwidth_hz`]; nothing where it is not
-/// above B even at vanishing gain.
-///
-/// ```text
-/// M = (GBP/B) √(1 − (B/B₀)²)
-/// ```
-///
-/// * `wanted_hz` – B, > 0
-/// * `bandwidth_at_unit_gain_hz` – B₀, > 0; infinite for none
-/// * `gain_bandwidth_hz` – GBP, > 0; infinite for none
-///
-/// The formula's own gain: below 1 no real gain is that fast.
-///
-/// # Example
-///
-/// ```
-/// use leastlight::physics::avalanche::gain_at_bandwidth;
-///
-/// assert!((gain_at_bandwidth(6.25e9, 10e9, 80e9).unwrap() - 10.0).abs() < 0.01);
-/// assert_eq!(gain_at_bandwidth(10e9, 10e9, 80e9), None);
-/// ```
-pub fn gain_at_bandwidth(
-    wanted_hz: f64,
-    bandwidth_at_unit_gain_hz: f64,
-    gain_bandwidth_hz: f64,
-) -> Option<f64> {
-    debug_assert!(wanted_hz > 0.0 && bandwidth_at_unit_gain_hz > 0.0 && gain_bandwidth_hz > 0.0);
-    let ratio = wanted_hz / bandwidth_at_unit_gain_hz;
-    (ratio < 1.0).then(|| gain_bandwidth_hz / wanted_hz * ((1.0 - ratio) * (1.0 + ratio)).sqrt())
-}

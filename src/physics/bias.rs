@@ -155,7 +155,7 @@ pub struct Operation {
 pub enum NoGain {
     /// The bias reaches breakdown and nothing in series holds the current.
     Breakdown,
-    /// The drop over the resistance takes the whole bias even at the lowest gain that is known.
+    /// Nothing of the bias is left for the junction, even at gain 1.
     Starved,
     /// The table begins at a higher voltage.
     BelowTable,
@@ -178,12 +178,11 @@ impl Biased {
 
     /// The gain at a bias: the root of [`Biased::bias_v`], which rises with gain, so there is one at most.
     ///
-    /// * `bias_v` – V in V, > 0
+    /// * `bias_v` – V in V; at 0 and below there is none
     /// * `currents` – I₀ and I_s
     ///
     /// At and above the breakdown voltage a solution exists only where a resistance and a current hold the junction below it.
     pub fn operation(&self, bias_v: f64, currents: &Currents) -> Result<Operation, NoGain> {
-        debug_assert!(bias_v > 0.0);
         // What is left for the multiplied current's drop and the junction.
         let left_v = bias_v - currents.beside_a * self.series_resistance_ohm;
         let per_gain_v = currents.multiplied_a * self.series_resistance_ohm;

@@ -7,7 +7,7 @@ import { percent } from "../../www/answer.js";
 import { choicesOf, takesPart, textsOf, typed } from "../../www/bench.js";
 import { scaleOf } from "../../www/chart/axis.js";
 import { bestPlace, overlap } from "../../www/chart/labels.js";
-import { fileName } from "../../www/files.js";
+import { csvOf, fileName } from "../../www/files.js";
 import { worthSaying } from "../../www/fields.js";
 import { closed, emptyHistory, recorded, redone, undone } from "../../www/history.js";
 import { SCHEMA, claims, compared, fileText, joined, read, sound } from "../../www/notebook.js";
@@ -142,6 +142,18 @@ describe("figures", () => {
     test("a title makes a file name", () => {
         assert.equal(fileName("Ansa Ridge, west dome (Prüfung)"), "ansa-ridge-west-dome-prufung");
         assert.equal(fileName("…"), "untitled");
+    });
+});
+
+describe("a table as CSV", () => {
+    const table = { title: "Bias", columns: ["Temperature / °C", "Gain, left alone"], rows: [["−20", "1.5"], ["0", "–"], ["5", 'say "8"']] };
+
+    test("is what a spreadsheet opens, with a plain minus and nothing for a dash", () => {
+        assert.equal(csvOf(table, "auto"), 'Temperature / °C,"Gain, left alone"\r\n-20,1.5\r\n0,\r\n5,"say ""8"""\r\n');
+    });
+
+    test("parts its cells by semicolons where the comma is the decimal mark", () => {
+        assert.equal(csvOf(table, "comma"), 'Temperature / °C;"Gain, left alone"\r\n-20;1,5\r\n0;\r\n5;"say ""8"""\r\n');
     });
 });
 

@@ -5,7 +5,8 @@ use leastlight::door;
 use leastlight::tree::Tree;
 use serde_json::Value;
 
-pub const ALL: &[(&str, Computation)] = &[("ask_sensitivity", sensitivity), ("ask_reading", reading)];
+pub const ALL: &[(&str, Computation)] =
+    &[("ask_sensitivity", sensitivity), ("ask_reading", reading), ("ask_avalanche_bias", avalanche_bias)];
 
 fn ask(question: &str, given: &mut Inputs) -> Result<Value, String> {
     let bench = given.value("bench")?.try_into::<Tree>().map_err(|error| error.to_string())?;
@@ -82,5 +83,44 @@ fn reading(given: &mut Inputs) -> Result<Outputs, String> {
         &mut outputs,
     );
     outputs.insert("table_db", each(&answer["table"], |row| row["correction_db"].as_f64()).into());
+    Ok(outputs)
+}
+
+fn avalanche_bias(given: &mut Inputs) -> Result<Outputs, String> {
+    let answer = ask("avalanche_bias", given)?;
+    let mut outputs = Outputs::new();
+    let names = [
+        "bias_v",
+        "best_gain",
+        "closed_form_gain",
+        "average_power_dbm",
+        "unit_gain_power_dbm",
+        "current_a",
+        "drop_v",
+        "breakdown_v",
+        "margin_v",
+        "gain_per_v",
+        "gain_per_k",
+        "gain_in_the_dark",
+        "sag_power_dbm",
+    ];
+    take(&answer, &names, &mut outputs);
+    for (name, part, key) in [
+        ("volt_above_db", "loss_per_volt", "above_db"),
+        ("volt_below_db", "loss_per_volt", "below_db"),
+        ("kelvin_above_db", "loss_per_kelvin", "above_db"),
+        ("kelvin_below_db", "loss_per_kelvin", "below_db"),
+        ("set_gain", "set", "gain"),
+        ("set_lost_db", "set", "lost_db"),
+    ] {
+        if let Some(number) = answer[part][key].as_f64() {
+            outputs.insert(name, number.into());
+        }
+    }
+    let column = |key: &str| each(&answer["table"], |row| row[key].as_f64());
+    outputs.insert("table_c", column("temperature_c").into());
+    outputs.insert("table_bias_v", column("bias_v").into());
+    outputs.insert("table_left_gain", column("left_gain").into());
+    outputs.insert("table_left_lost_db", column("left_lost_db").into());
     Ok(outputs)
 }

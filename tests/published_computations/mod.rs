@@ -1,5 +1,6 @@
 //! What the cases in `tests/published/` may ask for, by name.
 
+mod bias;
 mod device;
 mod door;
 mod light;
@@ -11,5 +12,5 @@ use crate::support::cases::Computation;
 
 /// Everything that a case may ask for.
 pub fn all() -> Vec<(&'static str, Computation)> {
-    [device::ALL, door::ALL, light::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
+    [bias::ALL, device::ALL, door::ALL, light::ALL, mathematics::ALL, receiver::ALL, transfer::ALL].concat()
 }

@@ -1,7 +1,8 @@
-//! The gain to aim at: that of the least noise, unless the detector is too slow there or the noise not known so far.
+//! The gain to aim at: that of the least noise, unless it makes the detector too slow or its noise is not known so far.
 
 use super::setup::Setup;
-use crate::physics::avalanche::gain_at_bandwidth;
+use crate::numeric::root::root;
+use crate::physics::decibel::db_from_ratio;
 use crate::physics::sensitivity::{BestGain, Link, best_gain, least_average_power_w};
 use crate::questions::sensitivity::MOST_GAIN;
 use serde::Serialize;
@@ -23,8 +24,8 @@ pub struct Best {
 pub enum Limit {
     /// Its noise.
     Noise,
-    /// The detector, slower than the receiver from there on.
-    Bandwidth,
+    /// The gain–bandwidth product, slower than the receiver from there on.
+    GainBandwidth,
     /// Nothing that is known: the table of excess noise ends.
     NoiseTable,
 }
@@ -63,12 +64,13 @@ impl Scaled<'_> {
         least_average_power_w(&self.link_at(gain), self.setup.receiver.target).ok()
     }
 
-    /// The gain from which on the detector is slower than the receiver; nothing where it always or never is.
+    /// The gain from which on the gain–bandwidth product alone is slower than the receiver; at least 1.
+    ///
+    /// The detector's speed at unit gain is left out: it slows the receiver at any gain, so it tells no gain from another.
     pub fn gain_of_equal_speed(&self) -> Option<f64> {
         let receiver = &self.setup.receiver;
-        let unit_gain_hz = receiver.detector_bandwidth_hz.unwrap_or(f64::INFINITY);
-        let wanted_hz = receiver.bandwidth_hz? * self.rate;
-        gain_at_bandwidth(wanted_hz, unit_gain_hz, receiver.gain_bandwidth_hz?).filter(|gain| *gain >= 1.0)
+        let gain = receiver.gain_bandwidth_hz? / (receiver.bandwidth_hz? * self.rate);
+        Some(gain.max(1.0))
     }
 
     /// The gain to aim at.
@@ -76,7 +78,7 @@ impl Scaled<'_> {
         let by_speed = self.gain_of_equal_speed().unwrap_or(f64::INFINITY);
         let by_table = self.setup.receiver.reach(f64::INFINITY);
         let end = by_speed.min(by_table).min(MOST_GAIN);
-        let limit = if by_speed <= by_table { Limit::Bandwidth } else { Limit::NoiseTable };
+        let limit = if by_speed <= by_table { Limit::GainBandwidth } else { Limit::NoiseTable };
         if end == 1.0 {
             let power_w = self.power_w(1.0).ok_or(NoBest::NoPower)?;
             return Ok(Best { gain: 1.0, power_w, limit });
@@ -87,5 +89,17 @@ impl Scaled<'_> {
             BestGain::NoUpperEnd { .. } => Err(NoBest::NoUpperEnd),
             BestGain::None => Err(NoBest::NoPower),
         }
+    }
+
+    /// The lowest gain at which the sensitivity is `worse_db` worse than at the best; nothing where it is nowhere so bad below
+    /// that. The power falls with gain up to the best, so there is one such gain at most.
+    pub fn near_gain(&self, best: &Best, worse_db: f64) -> Option<f64> {
+        let off_db = |ln_gain: f64| {
+            // The logarithm may round to just outside of the ends.
+            let gain = libm::exp(ln_gain).clamp(1.0, best.gain);
+            self.power_w(gain).map_or(f64::NAN, |power_w| db_from_ratio(power_w / best.power_w) - worse_db)
+        };
+        let found = root(off_db, 0.0, libm::log(best.gain), 1e-12).ok()?;
+        Some(libm::exp(found).clamp(1.0, best.gain))
     }
 }

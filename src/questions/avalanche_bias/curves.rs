@@ -107,7 +107,7 @@ fn against_gain(setup: &Setup, answer: &Answer) -> (Option<Curve>, Option<Curve>
     if let Some((x, y)) = answer.set.as_ref().and_then(|set| set.gain.zip(set.average_power_dbm)) {
         marks.push(Mark::Point { name: "as set now".to_owned(), x, y });
     }
-    let level = |at| Mark::Level { name: "detector as slow as receiver".to_owned(), axis: "x", at };
+    let level = |at| Mark::Level { name: "gain–bandwidth limit".to_owned(), axis: "x", at };
     let slow = receiver.gain_of_equal_speed().filter(|gain| *gain <= most_gain(answer)).map(level);
     marks.extend(slow.clone());
     let sensitivity = Curve {
@@ -154,7 +154,7 @@ fn against_gain(setup: &Setup, answer: &Answer) -> (Option<Curve>, Option<Curve>
 fn against_symbol_rate(setup: &Setup, answer: &Answer) -> Option<Curve> {
     let receiver = &setup.receiver;
     let own_bd = receiver.bit_rate_hz? / receiver.format.bits_per_symbol();
-    // From there on the detector is slower than the receiver at any gain.
+    // From there on the detector is slower than the receiver even at gain 1.
     let fastest =
         receiver.detector_bandwidth_at(1.0).zip(receiver.bandwidth_hz).map(|(unit, own)| unit / own);
     let (low, high) = (1.0 / RATE_SPAN, fastest.unwrap_or(RATE_SPAN).min(RATE_SPAN));
@@ -178,7 +178,7 @@ fn against_symbol_rate(setup: &Setup, answer: &Answer) -> Option<Curve> {
         marks.push(Mark::Point { name: "this receiver".to_owned(), x: own_bd, y });
     }
     if let Some(fastest) = fastest.filter(|fastest| *fastest <= RATE_SPAN) {
-        let name = "detector too slow at any gain".to_owned();
+        let name = "detector too slow even at gain 1".to_owned();
         marks.push(Mark::Level { name, axis: "x", at: own_bd * fastest });
     }
     (!places.is_empty()).then(|| Curve {

@@ -34,6 +34,10 @@ pub struct Answer {
     pub closed_form_gain: Option<f64>,
     /// The sensitivity at the best gain, dBm.
     pub average_power_dbm: Option<f64>,
+    /// The lowest gain that is at most 0.1 dB worse: how flat the valley is. Absent where gain 1 is such.
+    pub near_gain: Option<f64>,
+    /// The bias for it, V.
+    pub near_bias_v: Option<f64>,
     /// The sensitivity at gain 1: that of a PIN photodiode of the same build, dBm.
     pub unit_gain_power_dbm: Option<f64>,
     /// How much better the best gain is than gain 1, dB.
@@ -103,6 +107,9 @@ pub struct AtSet {
 /// A gain that has sagged to this share is 1 dB down, as optical powers are counted.
 const SAG_DB: f64 = 1.0;
 
+/// So much worse than the best is still all but as good, dB.
+const NEAR_DB: f64 = 0.1;
+
 /// Room for the supply's current limit above the current in use: common practice.
 const LIMIT_FACTOR: f64 = 2.0;
 
@@ -123,6 +130,8 @@ pub fn numbers(bench: &Bench) -> Result<Vec<(&'static str, Option<f64>)>, Faults
         ("bias_v", answer.bias_v),
         ("best_gain", answer.best_gain),
         ("average_power_dbm", answer.average_power_dbm),
+        ("near_gain", answer.near_gain),
+        ("near_bias_v", answer.near_bias_v),
         ("unit_gain_power_dbm", answer.unit_gain_power_dbm),
         ("improvement_db", answer.improvement_db),
         ("current_a", answer.current_a),
@@ -157,6 +166,8 @@ fn figures(setup: &Setup) -> Answer {
         best_gain_limit: found.map(|best| best.limit),
         closed_form_gain: setup.receiver.closed_form_gain(),
         average_power_dbm: power_dbm,
+        near_gain: found.and_then(|best| receiver.near_gain(&best, NEAR_DB)),
+        near_bias_v: None,
         unit_gain_power_dbm: unit_gain_dbm,
         improvement_db: unit_gain_dbm.zip(power_dbm).map(|(unit, best)| unit - best),
         light_w,
@@ -219,6 +230,7 @@ fn sit(
     let junction_v = biased.junction.junction_v(best.gain);
     let bias_v = biased.bias_v(best.gain, currents);
     match junction_v.zip(bias_v) {
+        Some((_, bias_v)) if bias_v <= 0.0 => Err(none(shown::no_junction(setup))),
         Some((junction_v, bias_v)) => {
             Ok(Sits { bias_v, at: Operation { gain: best.gain, junction_v }, power_w: best.power_w })
         }
@@ -235,12 +247,13 @@ fn sit_down(setup: &Setup, biased: &Biased, currents: &Currents, sits: &Sits, an
         let gain = biased?.operation(bias_v, currents).ok()?.gain;
         Some(db_from_ratio(power_at(setup, gain)? / power_w))
     };
-    let volts = |by: f64| lost_db(Some(biased.clone()), bias_v + by).filter(|_| bias_v + by > 0.0);
+    let volts = |by: f64| lost_db(Some(biased.clone()), bias_v + by);
     let kelvin = |by: f64| lost_db(setup.biased(setup.temperature_c.map(|now| now + by)), bias_v);
     let dark = Currents { beside_a: currents.beside_a, ..setup.currents(0.0) };
     let in_the_dark = biased.operation(bias_v, &dark).ok().map(|at| at.gain);
 
     answer.bias_v = Some(bias_v);
+    answer.near_bias_v = answer.near_gain.and_then(|gain| biased.bias_v(gain, currents));
     answer.current_a = Some(current_a);
     answer.drop_v = Some(current_a * setup.series_resistance_ohm);
     answer.margin_v = answer.breakdown_v.map(|breakdown_v| breakdown_v - bias_v);

@@ -1,6 +1,6 @@
 //! The bias as it is shown: headline, figures, table, doubts and notes.
 
-use super::best::{Best, Limit, Scaled};
+use super::best::{Best, Limit};
 use super::setup::Setup;
 use super::{Answer, AtSet, Loss};
 use crate::bench::Bench;
@@ -23,8 +23,10 @@ const WORTHWHILE_DB: f64 = 0.5;
 /// Why no gain is the best gain.
 pub fn gain_does_not_pay(best: &Best) -> String {
     match best.limit {
-        Limit::Bandwidth => {
-            "any gain makes the detector slower than the receiver: at this bandwidth a PIN photodiode does as well".to_owned()
+        Limit::GainBandwidth => {
+            "the gain–bandwidth product is below the receiver's bandwidth: any gain makes the detector too slow. A PIN \
+             photodiode does as well"
+                .to_owned()
         }
         _ => "any gain harms: its noise costs more than it lifts the signal over the circuit noise. A PIN photodiode \
               does better here"
@@ -35,9 +37,8 @@ pub fn gain_does_not_pay(best: &Best) -> String {
 /// Why there is no junction at the temperature now.
 pub fn no_junction(setup: &Setup) -> String {
     let now = setup.temperature_c.map_or(String::new(), |now| format!(" at {} °C", brief(now, 4)));
-    format!(
-        "the breakdown voltage would fall to 0{now}. Check the temperature coefficient and the temperatures it spans"
-    )
+    let what = if setup.is_measured() { "the voltages of the table" } else { "the breakdown voltage" };
+    format!("{what} would fall to 0{now}. Check the temperature coefficient and the temperatures it spans")
 }
 
 /// Why the table gives no voltage for a gain.
@@ -104,7 +105,9 @@ fn facts(setup: &Setup, answer: &Answer) -> Vec<Fact> {
     let mut facts = Vec::new();
     facts.extend(answer.best_gain.map(|gain| {
         let limit = match answer.best_gain_limit {
-            Some(Limit::Bandwidth) => "from there on the detector is slower than the receiver",
+            Some(Limit::GainBandwidth) => {
+                "from there on the gain–bandwidth product is slower than the receiver"
+            }
             Some(Limit::NoiseTable) => "where the table of excess noise ends; more may be better",
             _ => "from there on its noise costs more than it brings",
         };
@@ -112,6 +115,11 @@ fn facts(setup: &Setup, answer: &Answer) -> Vec<Fact> {
         Fact::number("Best gain", gain).noted(format!("{limit}{}", closed.unwrap_or_default()))
     }));
     facts.extend(answer.average_power_dbm.map(|dbm| Fact::fixed("Sensitivity at that gain", dbm, 2, "dBm")));
+    facts.extend(answer.near_gain.map(|gain| {
+        let bias = answer.near_bias_v.map(|bias_v| format!(", at {} V", fixed(bias_v, 2)));
+        Fact::number("Lowest gain that loses only 0.1 dB", gain)
+            .noted(format!("the valley is flat{}", bias.unwrap_or_default()))
+    }));
     facts.extend(answer.unit_gain_power_dbm.map(|dbm| {
         let better =
             answer.improvement_db.map(|db| format!("the best gain is {} dB better", fixed(db.max(0.0), 2)));
@@ -119,9 +127,7 @@ fn facts(setup: &Setup, answer: &Answer) -> Vec<Fact> {
     }));
     facts.extend(answer.set.iter().flat_map(set_facts));
     facts.extend(answer.breakdown_v.map(|volts| Fact::fixed("Breakdown voltage now", volts, 2, "V")));
-    facts.extend(
-        answer.margin_v.map(|volts| Fact::fixed("Margin to breakdown", volts, 2, "V").noted("below it")),
-    );
+    facts.extend(answer.margin_v.map(|volts| Fact::fixed("Margin to breakdown", volts, 2, "V")));
     facts.extend(slopes(answer));
     facts.extend(
         answer.loss_per_volt.and_then(|loss| lost("Sensitivity lost per volt of error", "1 V", &loss)),
@@ -283,14 +289,13 @@ fn doubts(setup: &Setup, answer: &Answer) -> Vec<String> {
         ));
     }
     let receiver = &setup.receiver;
-    let never = Scaled { setup, rate: 1.0 }.gain_of_equal_speed().is_none();
-    if let Some((detector_hz, needed_hz)) = receiver.detector_bandwidth_at(1.0).zip(receiver.bandwidth_hz)
+    if let Some((gain, needed_hz)) = answer.best_gain.zip(receiver.bandwidth_hz)
+        && let Some(detector_hz) = receiver.detector_bandwidth_at(gain)
         && detector_hz < needed_hz
-        && never
     {
         doubts.push(format!(
-            "Even at gain 1 the detector passes {} and is slower than the receiver's {}: its speed was left out of the \
-             best gain, and the eye closes by an amount that is not counted. Use a faster detector.",
+            "At the best gain the detector passes {} and is slower than the receiver's {}: the eye closes by an amount \
+             that is not counted here. Use a faster detector or a lower gain, or measure the eye.",
             prefixed(detector_hz, "Hz", 3),
             prefixed(needed_hz, "Hz", 3)
         ));
@@ -324,7 +329,7 @@ fn notes(setup: &Setup, answer: &Answer) -> Vec<String> {
     }
     notes.push(
         "The best gain is where the least average power is least, with all noise of the bench, among the gains at which \
-         the detector is not slower than the receiver."
+         the gain–bandwidth product is not slower than the receiver."
             .to_owned(),
     );
     if answer.improvement_db.is_some() {
