@@ -60,13 +60,18 @@ impl<const N: usize> Dual<N> {
     pub fn pow(self, exponent: Dual<N>) -> Dual<N> {
         let value = libm::pow(self.value, exponent.value);
         let (by_base, by_exponent) = (exponent.value * value / self.value, value * libm::log(self.value));
-        let slope = |index: usize| by_base * self.slopes[index] + by_exponent * exponent.slopes[index];
-        Dual { value, slopes: core::array::from_fn(slope) }
+        self.chain_with(exponent, value, by_base, by_exponent)
     }
 
     /// A function of this number, from its value and its derivative there.
     fn chain(self, value: f64, derivative: f64) -> Dual<N> {
         Dual { value, slopes: self.slopes.map(|slope| derivative * slope) }
+    }
+
+    /// A function of this number and another, from its value and its derivatives by both.
+    fn chain_with(self, other: Dual<N>, value: f64, by_self: f64, by_other: f64) -> Dual<N> {
+        let slope = |index: usize| by_self * self.slopes[index] + by_other * other.slopes[index];
+        Dual { value, slopes: core::array::from_fn(slope) }
     }
 }
 
@@ -80,24 +85,21 @@ impl<const N: usize> Neg for Dual<N> {
 impl<const N: usize> Add for Dual<N> {
     type Output = Dual<N>;
     fn add(self, other: Dual<N>) -> Dual<N> {
-        let slope = |index: usize| self.slopes[index] + other.slopes[index];
-        Dual { value: self.value + other.value, slopes: core::array::from_fn(slope) }
+        self.chain_with(other, self.value + other.value, 1.0, 1.0)
     }
 }
 
 impl<const N: usize> Sub for Dual<N> {
     type Output = Dual<N>;
     fn sub(self, other: Dual<N>) -> Dual<N> {
-        let slope = |index: usize| self.slopes[index] - other.slopes[index];
-        Dual { value: self.value - other.value, slopes: core::array::from_fn(slope) }
+        self.chain_with(other, self.value - other.value, 1.0, -1.0)
     }
 }
 
 impl<const N: usize> Mul for Dual<N> {
     type Output = Dual<N>;
     fn mul(self, other: Dual<N>) -> Dual<N> {
-        let slope = |index: usize| self.slopes[index] * other.value + self.value * other.slopes[index];
-        Dual { value: self.value * other.value, slopes: core::array::from_fn(slope) }
+        self.chain_with(other, self.value * other.value, other.value, self.value)
     }
 }
 
@@ -105,8 +107,7 @@ impl<const N: usize> Div for Dual<N> {
     type Output = Dual<N>;
     fn div(self, other: Dual<N>) -> Dual<N> {
         let value = self.value / other.value;
-        let slope = |index: usize| (self.slopes[index] - value * other.slopes[index]) / other.value;
-        Dual { value, slopes: core::array::from_fn(slope) }
+        self.chain_with(other, value, 1.0 / other.value, -value / other.value)
     }
 }
 
