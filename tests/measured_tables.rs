@@ -100,6 +100,7 @@ fn a_typed_bench_takes_the_tables_and_writes_them_back() {
     assert_eq!(understood.faults, []);
     let bench = serde_json::to_value(&understood.bench).expect("JSON");
     assert_eq!(bench["measurements"]["iv"]["points"][1]["light_a"], 7.375e-6);
+    assert_eq!(bench["measurements"]["bandwidth"]["points"][1]["standard_hz"], 7e7);
     assert_eq!(bench["measurements"]["temperature_c"], 22.0);
     let tree = Tree::from_json(&bench.to_string()).expect("JSON");
     for pointer in ["/measurements/iv", "/measurements/bandwidth"] {

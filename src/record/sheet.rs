@@ -265,7 +265,12 @@ impl<'t> Sheet<'t> {
         let unit = unit_in(text);
         match role {
             // Their units do not tell them from the value beside them.
-            Role::DarkCurrent | Role::Standard => has(&plain, words),
+            Role::DarkCurrent => has(&plain, words),
+            Role::Standard => {
+                // u is the symbol of the guides.
+                let first = plain.split(|c: char| !c.is_alphanumeric()).next();
+                has(&plain, words) || first == Some("u")
+            }
             Role::Wavelength => {
                 has(&plain, WAVELENGTH)
                     || has(&plain, words)
