@@ -2,4 +2,5 @@
 
 pub mod fit;
 pub mod normal;
+pub mod student;
 pub mod transfer;

@@ -130,7 +130,7 @@ fn correlations(fit: &Fitted) -> Option<Table> {
         .map(|one| std::iter::once(title(one)).chain(told.iter().map(|other| cell(*one, *other))).collect());
     Some(Table {
         title: format!("Correlation of what the {} tells", spoken(fit.table)),
-        columns: std::iter::once(String::new()).chain(told.iter().map(title)).collect(),
+        columns: std::iter::once("Number".to_owned()).chain(told.iter().map(title)).collect(),
         rows: rows.collect(),
     })
 }
