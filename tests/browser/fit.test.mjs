@@ -37,7 +37,7 @@ for (const engine of ENGINES) {
             person.run((name, wanted) => {
                 const select = document.forms.bench.elements.namedItem(name);
                 select.value = wanted;
-                select.dispatchEvent(new Event("change", { bubbles: true }));
+                select.dispatchEvent(new Event("input", { bubbles: true }));
             }, pointer, value);
 
         test("finds the demonstration device fitted, with what is left of each point", async () => {
