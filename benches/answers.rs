@@ -3,6 +3,8 @@
 use divan::{Bencher, black_box};
 use leastlight::bench::Bench;
 use leastlight::door;
+use leastlight::physics::bias::{Biased, Currents, Junction};
+use leastlight::physics::miller::Miller;
 use leastlight::questions::QUESTIONS;
 use leastlight::tree::Tree;
 
@@ -132,4 +134,32 @@ fn a_million_trials_of_the_reading(bencher: Bencher) {
 #[divan::bench(sample_count = 1, sample_size = 1)]
 fn a_million_trials_of_the_sensitivity(bencher: Bencher) {
     trials(bencher, "sensitivity");
+}
+
+/// A device of 200 measured currents, beyond breakdown behind its series resistance: the slowest of the fits.
+#[divan::bench]
+fn device_of_200_points(bencher: Bencher) {
+    let mut points = Vec::new();
+    let point = |bias_v: f64, light_a: f64| {
+        Tree::Map(vec![
+            ("bias_v".to_owned(), bias_v.into()),
+            ("dark_a".to_owned(), 1e-9.into()),
+            ("light_a".to_owned(), light_a.into()),
+        ])
+    };
+    for index in 0..200 {
+        let bias_v = 6.0 + 0.254 * f64::from(index);
+        // Half a per cent to and fro, as an instrument's last digits.
+        let ripple = 1.0 + 0.005 * f64::from((index * 7) % 5 - 2) / 2.0;
+        let junction = Junction::Miller(Miller { breakdown_v: 56.4, exponent: 2.6 });
+        let biased = Biased { junction, series_resistance_ohm: 1e4 };
+        let currents = Currents { multiplied_a: 1e-6, beside_a: 1e-9 };
+        let gain = biased.operation(bias_v, &currents).map_or(1.0, |found| found.gain);
+        points.push(point(bias_v, ripple * 1e-6 * gain + 1e-9));
+    }
+    let table = |points| Tree::Map(vec![("points".to_owned(), Tree::List(points))]);
+    let measurements = Tree::Map(vec![("iv".to_owned(), table(points))]);
+    let bench = Tree::Map(vec![("measurements".to_owned(), measurements)]);
+    assert!(door::ask("device_fit", &bench, &Tree::Null).is_ok());
+    bencher.bench(|| door::ask("device_fit", black_box(&bench), &Tree::Null));
 }

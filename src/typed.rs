@@ -12,8 +12,9 @@ use crate::quantity::kind;
 use crate::quantity::number::DecimalMark;
 use crate::quantity::write;
 use crate::record::{
-    self, Choices, Reading, read_certificate, read_gains, read_noise_factors, read_responsivity,
-    read_spectrum, spectrum_layout, write_certificate_points, write_gain_points, write_noise_factor_points,
+    self, BANDWIDTHS, BREAKDOWNS, CURRENTS, Choices, MeasuredKind, NOISES, Reading, read_certificate,
+    read_gains, read_measured, read_noise_factors, read_responsivity, read_spectrum, spectrum_layout,
+    write_certificate_points, write_gain_points, write_measurements, write_noise_factor_points,
     write_responsivity_points, write_spectrum_points,
 };
 use crate::tree::Tree;
@@ -87,6 +88,30 @@ const PLACES: &[Place] = &[
         only_points: false,
     },
     Place { pointer: "/detector/avalanche/bias", read: gains, layout: |_, _| None, only_points: false },
+    Place {
+        pointer: "/measurements/iv",
+        read: |t, c| measured(t, c, &CURRENTS),
+        layout: |_, _| None,
+        only_points: false,
+    },
+    Place {
+        pointer: "/measurements/noise",
+        read: |t, c| measured(t, c, &NOISES),
+        layout: |_, _| None,
+        only_points: false,
+    },
+    Place {
+        pointer: "/measurements/bandwidth",
+        read: |t, c| measured(t, c, &BANDWIDTHS),
+        layout: |_, _| None,
+        only_points: false,
+    },
+    Place {
+        pointer: "/measurements/breakdown",
+        read: |t, c| measured(t, c, &BREAKDOWNS),
+        layout: |_, _| None,
+        only_points: false,
+    },
     Place { pointer: "/meter/typical_curve", read: responsivity, layout: |_, _| None, only_points: true },
     Place { pointer: "/meter/certificate", read: certificate, layout: |_, _| None, only_points: false },
 ];
@@ -115,6 +140,12 @@ fn gains(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
 fn noise_factors(text: &str, choices: &Choices) -> Result<Pasted, Faults> {
     let table = read_noise_factors(text, choices)?;
     let rows = table.points.iter().map(|point| row(&[("gain", point.gain), ("factor", point.factor)]));
+    Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
+}
+
+fn measured(text: &str, choices: &Choices, what: &MeasuredKind) -> Result<Pasted, Faults> {
+    let table = read_measured(text, choices, what)?;
+    let rows = table.points.iter().map(|point| row(point));
     Ok(Pasted { entries: vec![("points", Tree::List(rows.collect()))], reading: table.reading })
 }
 
@@ -205,6 +236,9 @@ pub fn write_table(pointer: &str, bench: &Bench, mark: DecimalMark) -> String {
                 Some(GainLaw::Table { points }) => write_gain_points(points, mark),
                 _ => String::new(),
             }
+        }
+        (pointer, _) if pointer.starts_with("/measurements/") => {
+            bench.measurements.as_ref().map_or_else(String::new, |all| write_measurements(pointer, all, mark))
         }
         ("/meter/typical_curve", _) => meter
             .and_then(|meter| meter.typical_curve.as_ref())

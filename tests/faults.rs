@@ -85,6 +85,11 @@ fn wrong_doubts_are_refused_where_they_are_wrong() {
 }
 
 #[test]
+fn wrong_measurements_are_refused_where_they_are_wrong() {
+    run(include_str!("faults/device_fit.toml"));
+}
+
+#[test]
 fn wrong_benches_for_the_bias_are_refused_where_they_are_wrong() {
     run(include_str!("faults/avalanche_bias.toml"));
 }

@@ -115,6 +115,11 @@ fn any_tree() -> impl Strategy<Value = Tree> {
         "reading_dbm",
         "table_wavelengths_nm",
         "typical_curve",
+        "measurements",
+        "iv",
+        "bias_v",
+        "light_a",
+        "bandwidth",
         "bias",
         "excess_noise",
         "breakdown_v",
@@ -217,7 +222,7 @@ proptest! {
 
     #[test]
     fn nothing_that_arrives_makes_the_door_panic(bench in any_tree(), options in any_tree()) {
-        for question in ["sensitivity", "reading", "avalanche_bias", "?"] {
+        for question in ["sensitivity", "reading", "avalanche_bias", "device_fit", "?"] {
             if let Ok(answer) = door::ask(question, &bench, &options) {
                 let answer = serde_json::to_value(answer).expect("an answer is JSON");
                 all_finite(&answer, "the answer").map_err(TestCaseError::fail)?;

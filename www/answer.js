@@ -22,7 +22,7 @@ import { chartFigure } from "./chart/figure.js";
 export function answerView(answer, mark) {
   const { shown } = answer;
   const parts = [
-    headline(shown, mark),
+    headline(answer, mark),
     doubts(shown, mark),
     facts(shown, mark),
     cautions(shown, mark),
@@ -34,8 +34,8 @@ export function answerView(answer, mark) {
   return parts.filter((part) => part instanceof HTMLElement);
 }
 
-/** @param {Shown} shown @param {Mark} mark */
-function headline(shown, mark) {
+/** @param {Answer} answer @param {Mark} mark */
+function headline({ shown, onto_bench: onto }, mark) {
   const figure = marked(shown.headline.figure, mark);
   return h(
     "div",
@@ -47,6 +47,7 @@ function headline(shown, mark) {
       "div",
       { class: "actions" },
       h("button", { type: "button", class: "main", id: "keep" }, "Keep this answer"),
+      onto && h("button", { type: "button", id: "onto-bench" }, onto.name),
       copyButton(figure, figure, "Copy figure"),
       h("button", { type: "button", click: () => copy(answerText(shown, mark), "the answer") }, "Copy answer"),
     ),

@@ -9,7 +9,7 @@
  *
  * @typedef {{ label: string, unit: string, scale: "linear" | "log", min?: number | null, max?: number | null }} Axis
  * @typedef {{ name: string, x: number[], y: number[] }} Line
- * @typedef {{ name: string, axis?: "x" | "y", at?: number, x?: number, y?: number }} CurveMark
+ * @typedef {{ name: string, axis?: "x" | "y", at?: number, x?: number | number[], y?: number | number[] }} CurveMark
  * @typedef {{ name: string, title: string, x: Axis, y: Axis, lines: Line[], marks: CurveMark[], band?: Band }} Curve
  *
  * @typedef {{ name: string, figure: string, note?: string, copy?: string }} Fact
@@ -19,7 +19,8 @@
  *   headline: { figure: string, sentence: string, uncertainty: string }, facts: Fact[], budgets: Budget[], tables: Table[],
  *   cautions: { about: string, sentence: string }[], doubts: string[], notes: string[]
  * }} Shown
- * @typedef {{ shown: Shown, curves: Curve[] } & Record<string, unknown>} Answer
+ * @typedef {{ name: string, values: { pointer: string, value: number | string }[], uncertainty: { inputs: { pointer: string, standard: number, degrees_of_freedom?: number }[], correlations: [number, number, number][] } }} OntoBench
+ * @typedef {{ shown: Shown, curves: Curve[], onto_bench?: OntoBench | null } & Record<string, unknown>} Answer
  * @typedef {{ answer?: Answer, faults?: Fault[] }} Asked
  *
  * @typedef {{ index: number, header: string | null, role: string, unit: string | null }} Column

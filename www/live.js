@@ -1,11 +1,11 @@
 /** From what was typed to what is shown: the state of the page, and everything that follows from it. */
 
 import { answerView } from "./answer.js";
-import { choicesOf, ofAreas, takesPart, textsOf, typed } from "./bench.js";
+import { DETECTOR_TYPE, choicesOf, ofAreas, takesPart, textsOf, typed } from "./bench.js";
 import { say } from "./copy.js";
 import { core, onTrap, start } from "./core.js";
 import { byId, h, inputById, setText } from "./dom.js";
-import { DOUBTS, doubtsOf, shortly } from "./doubts/text.js";
+import { DOUBTS, doubtsOf, instead, shortly, withDoubts } from "./doubts/text.js";
 import { showDoubts, showOffers } from "./doubts/view.js";
 import { addNotes, controls, fill, firstChoices, form, labelOf, openFor, ownerOf, showAlternatives, showDoubtful, showFaults, showUnderstood, showUse, under } from "./fields.js";
 import { emptyHistory, recorded, undone } from "./history.js";
@@ -130,7 +130,7 @@ function showAnswer(name, waits) {
   const [head, ...rest] = found ? answerView(found, state.mark) : [];
   byId("answer-head").replaceChildren(...(head ? [head] : []));
   byId("answer-rest").replaceChildren(...rest);
-  byId("doubts").hidden = !found || jobs.has(name);
+  byId("doubts").hidden = !found || jobs.has(name) || questions.every((one) => one.name !== name || one.uncertain.length === 0);
   const stale = waits.length > 0;
   answer.classList.toggle("stale", stale);
   const line = byId("state-line");
@@ -142,7 +142,7 @@ function showAnswer(name, waits) {
   answer.querySelector(".actions")?.prepend(...deeds);
   // One thing is the main one.
   if (deeds.length > 0) document.getElementById("keep")?.classList.remove("main");
-  for (const button of /** @type {NodeListOf<HTMLButtonElement>} */ (answer.querySelectorAll("#keep, [data-deed]"))) button.disabled = stale;
+  for (const button of /** @type {NodeListOf<HTMLButtonElement>} */ (answer.querySelectorAll("#keep, #onto-bench, [data-deed]"))) button.disabled = stale;
   const mini = byId("mini");
   mini.hidden = !found;
   setText(mini, found ? `${stale ? "Waiting; last: " : ""}${marked(found.shown.headline.figure, state.mark)}` : "");
@@ -229,6 +229,18 @@ export function putCertificate(certificate, name) {
   // The form stands in the table's header; correlation and scale were said of the other certificate.
   const texts = { [`${at}/points`]: points, [`${at}/coverage_factor`]: factor, [`${at}/form`]: "", [`${at}/point_correlation`]: "", [`${at}/scale`]: "" };
   change({ ...forgetting(state.texts, `${at}/points`), ...texts }, null, name);
+}
+
+/** Puts what an answer found onto the bench, as one step. @param {import("./door.js").OntoBench} onto */
+export function putOnto({ name, values, uncertainty }) {
+  const text = (/** @type {string} */ pointer, /** @type {number | string} */ value) =>
+    typeof value === "number" ? core.write_number(pointer, value, state.mark) : value;
+  const avalanche = values.some(({ pointer }) => pointer.startsWith("/detector/avalanche/"));
+  const found = Object.fromEntries(values.map(({ pointer, value }) => [pointer, text(pointer, value)]));
+  const inputs = uncertainty.inputs.map(({ pointer, standard, degrees_of_freedom: freedom }) => ({ pointer, name: "", standard: text(pointer, standard), distribution: "normal", ...(freedom && { degrees_of_freedom: String(freedom) }) }));
+  const doubts = instead(doubtsOf(state.texts), inputs, uncertainty.correlations);
+  change({ ...withDoubts(state.texts, doubts), ...found, ...(avalanche && { [DETECTOR_TYPE]: "avalanche" }) }, null, name);
+  say("On the bench; undo takes it back");
 }
 
 /** @param {typeof undone} step @param {string} says */

@@ -11,7 +11,7 @@ import { firstChoices, form, inputOf, labelOf } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
-import { besideBench, change, jobs, put, putCertificate, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
+import { besideBench, change, goodAnswer, jobs, put, putCertificate, putOnto, questions, sayFileFaults, state, understoodBench, update, version, walk } from "./live.js";
 import { startLog } from "./log/panel.js";
 import * as notebook from "./notebook.js";
 import { forgetting } from "./tables.js";
@@ -177,7 +177,10 @@ byId("help-close").addEventListener("click", () => help.close());
 addEventListener("hashchange", toHash);
 onReopen(showChooser);
 byId("answer").addEventListener("click", (event) => {
-  if (/** @type {Element} */ (event.target).closest("#keep")) keep();
+  const pressed = /** @type {Element} */ (event.target);
+  if (pressed.closest("#keep")) keep();
+  const onto = goodAnswer()?.onto_bench;
+  if (onto && pressed.closest("#onto-bench")) putOnto(onto);
 });
 
 function toHash() {

@@ -89,6 +89,7 @@ pub fn fields() -> impl Iterator<Item = &'static Field> {
         super::amplifier::FIELDS,
         super::decision::FIELDS,
         super::meter::FIELDS,
+        super::measurements::FIELDS,
         super::surroundings::FIELDS,
     ]
     .into_iter()

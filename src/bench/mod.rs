@@ -9,6 +9,7 @@ pub mod bias;
 pub mod decision;
 pub mod detector;
 pub mod field;
+pub mod measurements;
 pub mod meter;
 pub mod path;
 pub mod points;
@@ -23,6 +24,7 @@ use crate::tree::Tree;
 use amplifier::Amplifier;
 use decision::Decision;
 use detector::Detector;
+use measurements::Measurements;
 use meter::Meter;
 use path::Path;
 use reader::Reader;
@@ -53,6 +55,8 @@ pub struct Bench {
     pub decision: Option<Decision>,
     /// The power meter and its certificate.
     pub meter: Option<Meter>,
+    /// What was measured on the detector.
+    pub measurements: Option<Measurements>,
     /// What is around.
     pub surroundings: Option<Surroundings>,
     /// How well the numbers are known.
@@ -71,6 +75,7 @@ impl Bench {
             amplifier: None,
             decision: None,
             meter: None,
+            measurements: None,
             surroundings: None,
             uncertainty: None,
         }
@@ -94,6 +99,7 @@ impl Bench {
             "amplifier",
             "decision",
             "meter",
+            "measurements",
             "gate",
             "surroundings",
             "uncertainty",
@@ -115,6 +121,7 @@ impl Bench {
             amplifier: Amplifier::read(map.get("amplifier"), reader),
             decision: Decision::read(map.get("decision"), reader),
             meter: Meter::read(map.get("meter"), reader),
+            measurements: Measurements::read(map.get("measurements"), reader),
             surroundings: Surroundings::read(map.get("surroundings"), reader),
             uncertainty: Uncertainty::read(map.get("uncertainty"), "/uncertainty", reader),
         }

@@ -3,6 +3,8 @@
 pub mod cholesky;
 pub mod complex;
 pub mod derivative;
+pub mod dual;
+pub mod fit;
 pub mod gamma;
 pub mod minimum;
 pub mod pchip;

@@ -144,6 +144,15 @@ fn round_at(value: f64, power: i32) -> f64 {
     (value / step).round() * step
 }
 
+/// A value to three figures of its standard uncertainty: for a number that goes on as an input.
+pub fn worth_keeping(value: f64, standard: f64) -> f64 {
+    let figures = first_of(value) - first_of(standard) + 2;
+    match usize::try_from(figures.clamp(0, 16)) {
+        Ok(figures) if standard > 0.0 => format!("{value:.figures$e}").parse().unwrap_or(value),
+        _ => value,
+    }
+}
+
 /// The power of ten of the first figure.
 fn first_of(value: f64) -> i32 {
     split(&format!("{value:e}")).1

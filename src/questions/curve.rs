@@ -85,6 +85,15 @@ pub enum Mark {
         /// Where.
         at: f64,
     },
+    /// Measured points: as many heights as places.
+    Dots {
+        /// What they are.
+        name: String,
+        /// Places.
+        x: Vec<f64>,
+        /// Heights.
+        y: Vec<f64>,
+    },
     /// A point.
     Point {
         /// What it is.

@@ -2,6 +2,7 @@
 
 pub mod avalanche_bias;
 pub mod curve;
+pub mod device_fit;
 pub mod log;
 pub mod needs;
 pub mod prepared;
@@ -95,6 +96,16 @@ pub const QUESTIONS: &[Question] = &[
         uncertain: &[("bias_v", "the bias"), ("best_gain", "the best gain")],
         prepare: avalanche_bias::prepare,
     },
+    Question {
+        name: "device_fit",
+        asks: "What is this device?",
+        fields: &["/measurements"],
+        ask: |bench| device_fit::ask(bench).map(|answer| Answer::DeviceFit(Box::new(answer))),
+        numbers: device_fit::numbers,
+        // A fit brings its own intervals, from the scatter of the points.
+        uncertain: &[],
+        prepare: |_, of| Ok(Prepared::by_numbers(device_fit::numbers, of)),
+    },
 ];
 
 /// An answer to any question.
@@ -107,6 +118,8 @@ pub enum Answer {
     Reading(Box<reading::Answer>),
     /// Where the avalanche bias should sit.
     AvalancheBias(Box<avalanche_bias::Answer>),
+    /// What a device is.
+    DeviceFit(Box<device_fit::Answer>),
 }
 
 impl Answer {
@@ -116,6 +129,7 @@ impl Answer {
             Answer::Sensitivity(answer) => (&mut answer.shown, &mut answer.curves),
             Answer::Reading(answer) => (&mut answer.shown, &mut answer.curves),
             Answer::AvalancheBias(answer) => (&mut answer.shown, &mut answer.curves),
+            Answer::DeviceFit(answer) => (&mut answer.shown, &mut answer.curves),
         }
     }
 }

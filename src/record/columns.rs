@@ -295,6 +295,11 @@ fn words(role: Role) -> &'static str {
         Role::Voltage => "bias",
         Role::Gain => "gain",
         Role::NoiseFactor => "excess noise factor",
+        Role::DarkCurrent => "dark current",
+        Role::Current => "current",
+        Role::Bandwidth => "bandwidth",
+        Role::Temperature => "temperature",
+        Role::Standard => "standard uncertainty",
         _ => "column",
     }
 }

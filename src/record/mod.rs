@@ -17,6 +17,7 @@ mod gains;
 mod layout;
 mod log;
 mod mark;
+mod measured;
 mod names;
 mod points;
 mod reading;
@@ -29,6 +30,7 @@ mod time;
 mod transfer;
 mod words;
 mod write;
+mod write_measured;
 
 pub use certificate::{CertificateTable, read_certificate};
 pub use choices::{Choices, ColumnChoice};
@@ -36,6 +38,7 @@ pub use date::is_date;
 pub use dcc::{BadPoint, DccCertificate, DccQuantity, DccReading, QuantityKind, Taken, read_dcc, write_dcc};
 pub use gains::{GainsTable, NoiseFactorsTable, read_gains, read_noise_factors};
 pub use log::{LogChoices, LogReading, LogRow, LogStream, Refused, SettingFrom, Shows, StatusWord, Times};
+pub use measured::{BANDWIDTHS, BREAKDOWNS, CURRENTS, MeasuredKind, MeasuredTable, NOISES, read_measured};
 pub use names::{DecimalMark, Delimiter, Role, Unit};
 pub use reading::{BadRow, Column, Reading};
 pub use responsivity::{ResponsivityTable, read_responsivity};
@@ -45,3 +48,4 @@ pub use write::{
     number_text, remark, write_certificate_points, write_gain_points, write_noise_factor_points,
     write_responsivity_points, write_spectrum_points,
 };
+pub use write_measured::write_measurements;

@@ -86,6 +86,16 @@ named! {
         Gain = "gain",
         /// The excess noise factor of an avalanche.
         NoiseFactor = "excess_noise_factor",
+        /// The current of a device without light.
+        DarkCurrent = "dark_current",
+        /// The current of a device under light.
+        Current = "current",
+        /// The bandwidth of a device.
+        Bandwidth = "bandwidth",
+        /// The temperature of a device.
+        Temperature = "temperature",
+        /// The standard uncertainty u of what the row measures.
+        Standard = "standard_uncertainty",
         /// Nothing that is read.
         Ignored = "ignored",
     }
@@ -142,6 +152,28 @@ named! {
         Volt = "V",
         /// Millivolts.
         Millivolt = "mV",
+        /// Amperes.
+        Ampere = "A",
+        /// Milliamperes.
+        Milliampere = "mA",
+        /// Microamperes.
+        Microampere = "µA",
+        /// Nanoamperes.
+        Nanoampere = "nA",
+        /// Picoamperes.
+        Picoampere = "pA",
+        /// Hertz.
+        Hertz = "Hz",
+        /// Kilohertz.
+        Kilohertz = "kHz",
+        /// Megahertz.
+        Megahertz = "MHz",
+        /// Gigahertz.
+        Gigahertz = "GHz",
+        /// Degrees Celsius.
+        Celsius = "°C",
+        /// Kelvins.
+        Kelvin = "K",
     }
 }
 
@@ -205,13 +237,33 @@ impl Role {
             Role::Time => &[Unit::Second, Unit::Millisecond, Unit::Minute, Unit::Hour],
             Role::Voltage => &[Unit::Volt, Unit::Millivolt],
             Role::Gain | Role::NoiseFactor => &[Unit::One],
+            Role::DarkCurrent | Role::Current => {
+                &[Unit::Ampere, Unit::Milliampere, Unit::Microampere, Unit::Nanoampere, Unit::Picoampere]
+            }
+            Role::Bandwidth => &[Unit::Hertz, Unit::Kilohertz, Unit::Megahertz, Unit::Gigahertz],
+            Role::Temperature => &[Unit::Celsius, Unit::Kelvin],
+            Role::Standard => &[
+                Unit::Percent,
+                Unit::One,
+                Unit::Ampere,
+                Unit::Milliampere,
+                Unit::Microampere,
+                Unit::Nanoampere,
+                Unit::Picoampere,
+                Unit::Hertz,
+                Unit::Kilohertz,
+                Unit::Megahertz,
+                Unit::Gigahertz,
+                Unit::Volt,
+                Unit::Millivolt,
+            ],
             Role::Detector | Role::Date | Role::PowerUnit | Role::Range | Role::Status | Role::Ignored => &[],
         }
     }
 }
 
 impl Unit {
-    /// Recognises a unit of power, of power per nm, of time or of voltage as it is written in tables; `None` for anything else.
+    /// Recognises a unit of power, of power per nm, of time, voltage, current, frequency or temperature as it is written in tables; `None` for anything else.
     pub(super) fn written_of_power(text: &str) -> Option<Unit> {
         Some(match plain(text)?.as_str() {
             "W" => Unit::Watt,
@@ -231,23 +283,37 @@ impl Unit {
             "h" | "hours" => Unit::Hour,
             "V" | "volt" | "Volt" | "volts" | "Volts" => Unit::Volt,
             "mV" => Unit::Millivolt,
+            "A" => Unit::Ampere,
+            "mA" => Unit::Milliampere,
+            "uA" => Unit::Microampere,
+            "nA" => Unit::Nanoampere,
+            "pA" => Unit::Picoampere,
+            "Hz" => Unit::Hertz,
+            "kHz" => Unit::Kilohertz,
+            "MHz" => Unit::Megahertz,
+            "GHz" => Unit::Gigahertz,
+            "°C" | "C" | "degC" => Unit::Celsius,
+            "K" => Unit::Kelvin,
             _ => return None,
         })
     }
 
-    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s, V; 0 for levels and for what is
-    /// no power of ten apart.
+    /// The power of ten from this unit to the one that is kept: nm, A/W, 1, W, W/nm, s, V, A, Hz; 0 for levels,
+    /// temperatures and what is no power of ten apart.
     pub(super) fn power_of_ten(self) -> i32 {
         match self {
-            Unit::Micrometre => 3,
+            Unit::Gigahertz => 9,
+            Unit::Megahertz => 6,
+            Unit::Micrometre | Unit::Kilohertz => 3,
             Unit::MilliamperePerWatt
             | Unit::Milliwatt
             | Unit::MilliwattPerNm
             | Unit::Millisecond
-            | Unit::Millivolt => -3,
-            Unit::Microwatt | Unit::MicrowattPerNm => -6,
-            Unit::Nanowatt | Unit::NanowattPerNm => -9,
-            Unit::Picowatt => -12,
+            | Unit::Millivolt
+            | Unit::Milliampere => -3,
+            Unit::Microwatt | Unit::MicrowattPerNm | Unit::Microampere => -6,
+            Unit::Nanowatt | Unit::NanowattPerNm | Unit::Nanoampere => -9,
+            Unit::Picowatt | Unit::Picoampere => -12,
             Unit::Percent => -2,
             _ => 0,
         }

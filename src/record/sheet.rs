@@ -136,6 +136,11 @@ impl<'t> Sheet<'t> {
         self.rows.iter().skip(self.start).filter(|row| !row.is_remark())
     }
 
+    /// Whether a header names the columns.
+    pub(super) fn has_header(&self) -> bool {
+        self.header.is_some()
+    }
+
     /// The column of a role.
     pub(super) fn column(&self, role: Role) -> Option<Placed> {
         self.columns.iter().find(|column| column.role == role).copied()
@@ -253,13 +258,15 @@ impl<'t> Sheet<'t> {
         });
         let mut columns: Vec<Placed> = placed.collect();
         for column in columns.iter_mut().filter(|column| column.unit.is_none()) {
-            // A wavelength is in nm, a time in s and a voltage in V where nothing else is said, and a gain has no unit; of a
-            // power nothing is assumed.
+            // A wavelength is in nm, a time in s, a voltage in V, a current in A and a temperature in °C where nothing else
+            // is said, and a gain has no unit; of a power or a bandwidth nothing is assumed.
             column.unit = match column.role {
                 Role::Wavelength => Some(Unit::Nanometre),
                 Role::Time => Some(Unit::Second),
                 Role::Voltage => Some(Unit::Volt),
                 Role::Gain | Role::NoiseFactor => Some(Unit::One),
+                Role::DarkCurrent | Role::Current => Some(Unit::Ampere),
+                Role::Temperature => Some(Unit::Celsius),
                 _ => None,
             };
         }
@@ -271,6 +278,13 @@ impl<'t> Sheet<'t> {
         let plain = folded(text);
         let unit = unit_in(text);
         match role {
+            // Their units do not tell them from the value beside them.
+            Role::DarkCurrent => has(&plain, words),
+            Role::Standard => {
+                // u is the symbol of the guides.
+                let first = plain.split(|c: char| !c.is_alphanumeric()).next();
+                has(&plain, words) || first == Some("u")
+            }
             Role::Wavelength => {
                 has(&plain, WAVELENGTH)
                     || has(&plain, words)
@@ -406,9 +420,13 @@ fn noun(role: Role) -> &'static str {
         Role::Detector => "detector",
         Role::Power => "reading",
         Role::Time => "time",
-        Role::Voltage => "bias",
+        Role::Voltage => "voltage",
         Role::Gain => "gain",
         Role::NoiseFactor => "excess noise factor",
+        Role::DarkCurrent => "dark current",
+        Role::Current => "current",
+        Role::Bandwidth => "bandwidth",
+        Role::Temperature => "temperature",
         _ => "value",
     }
 }

@@ -1,7 +1,7 @@
 //! Two detectors compared in turn: the ratio of their readings without drift, its scatter, and what both are worth.
 
 use super::normal::upper_tail_quantile;
-use statrs::distribution::{ContinuousCDF, StudentsT};
+use super::student::student_factor;
 
 /// The comparison of one block of readings.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -116,7 +116,7 @@ pub fn combined(parts: &[Uncertain]) -> Uncertain {
 /// * `probability` – what the interval ± k·u is to cover, above 0 and below 1
 /// * `degrees_of_freedom` – ν, at least 1, may be infinite
 ///
-/// Above ν = 1000, where the library loses digits, the expansion about the normal quantile: relative error below 1e-10.
+/// Above ν = 1000 the expansion about the normal quantile: relative error below 1e-10.
 ///
 /// Source: JCGM 100:2008, G.3; the expansion: M. Abramowitz, I. A. Stegun, Handbook of Mathematical Functions (1964),
 /// 26.7.5.
@@ -132,10 +132,8 @@ pub fn combined(parts: &[Uncertain]) -> Uncertain {
 pub fn coverage_factor(probability: f64, degrees_of_freedom: f64) -> f64 {
     debug_assert!(probability > 0.0 && probability < 1.0 && degrees_of_freedom >= 1.0);
     let nu = degrees_of_freedom;
-    if nu <= 1000.0
-        && let Ok(student) = StudentsT::new(0.0, 1.0, nu)
-    {
-        return student.inverse_cdf(0.5 + 0.5 * probability);
+    if nu <= 1000.0 {
+        return student_factor(probability, nu);
     }
     let z = upper_tail_quantile(0.5 - 0.5 * probability);
     let (z2, inverse) = (z * z, 1.0 / nu);

@@ -203,8 +203,9 @@ fn number_of(
     stated: &Uncertainty,
     at: &str,
 ) -> Result<Option<&'static str>, Faults> {
-    let wanted =
-        stated.of.as_deref().or(question.uncertain.first().map(|(name, _)| *name)).unwrap_or_default();
+    let Some(wanted) = stated.of.as_deref().or(question.uncertain.first().map(|(name, _)| *name)) else {
+        return Ok(None);
+    };
     let numbers = (question.numbers)(bench)?;
     let pointer = format!("{at}/of");
     match numbers.iter().find(|(name, _)| *name == wanted) {

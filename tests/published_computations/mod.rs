@@ -2,6 +2,7 @@
 
 mod bias;
 mod counting;
+mod device;
 mod door;
 mod light;
 mod log;
@@ -16,6 +17,7 @@ pub fn all() -> Vec<(&'static str, Computation)> {
     [
         bias::ALL,
         counting::ALL,
+        device::ALL,
         door::ALL,
         light::ALL,
         log::ALL,

@@ -4,6 +4,7 @@ import { line as lineShape } from "d3-shape";
 import { s } from "../dom.js";
 import { scaleOf } from "./axis.js";
 import { bestPlace, textWidth } from "./labels.js";
+import { seriesOf } from "./series.js";
 
 /**
  * @typedef {import("../door.js").Curve} Curve
@@ -12,7 +13,7 @@ import { bestPlace, textWidth } from "./labels.js";
  * @typedef {import("./axis.js").Tick} Tick
  * @typedef {import("./labels.js").Box} Box
  * @typedef {{ x: number, y: number, px: number, py: number }} Seen a point on the paper
- * @typedef {{ svg: SVGElement, overlay: SVGElement, frame: Box, lines: { name: string, points: Seen[] }[] }} Drawing
+ * @typedef {{ svg: SVGElement, overlay: SVGElement, frame: Box, lines: { name: string, dots: boolean, points: Seen[] }[] }} Drawing
  */
 
 const SIZE = 12;
@@ -26,7 +27,7 @@ export function draw(curve, width, mark) {
   const frame = { x: 58, y: key.height + 8, width: Math.max(width - 58 - 12, 80), height: HEIGHT - key.height - 54 };
   const x = scaleOf(curve.x, all(curve, "x"), [frame.x, frame.x + frame.width], Math.max(2, Math.floor(frame.width / 70)), mark);
   const y = scaleOf(curve.y, all(curve, "y"), [frame.y + frame.height, frame.y], Math.max(3, Math.floor(frame.height / 26)), mark);
-  const lines = curve.lines.map(({ name, x: xs, y: ys }) => ({ name, points: seen(xs, ys, x, y) }));
+  const lines = seriesOf(curve).map(({ name, dots, x: xs, y: ys }) => ({ name, dots, points: seen(xs, ys, x, y) }));
   const overlay = s("g", { class: "overlay" });
   const clip = `clip-${curve.name}`;
   const svg = s(
@@ -35,7 +36,7 @@ export function draw(curve, width, mark) {
     s("defs", {}, s("clipPath", { id: clip }, s("rect", { ...frame }))),
     key.group,
     grid(x, y, frame),
-    s("g", { "clip-path": `url(#${clip})` }, ...(curve.band ? bandPaths(curve.band, lines) : lines.map(({ points }, i) => s("path", { class: `line line-${i % 4}`, d: pathOf(points) })))),
+    s("g", { "clip-path": `url(#${clip})` }, ...(curve.band ? bandPaths(curve.band, lines) : lines.map(({ dots, points }, i) => (dots ? dotsOf(points) : s("path", { class: `line line-${i % 4}`, d: pathOf(points) }))))),
     axisTexts(curve, x, y, frame),
     ...marks(curve, x, y, frame, lines),
     overlay,
@@ -46,7 +47,7 @@ export function draw(curve, width, mark) {
 /** @param {Curve} curve @param {"x" | "y"} axis */
 function all(curve, axis) {
   const marked = curve.marks.map((mark) => (mark.axis === axis ? mark.at : mark[axis]));
-  return [...curve.lines.flatMap((one) => one[axis]), ...marked.filter((value) => value !== undefined)];
+  return [...seriesOf(curve).flatMap((one) => one[axis]), ...marked.filter((value) => typeof value === "number")];
 }
 
 /** @param {number[]} xs @param {number[]} ys @param {Scale} x @param {Scale} y @returns {Seen[]} */
@@ -74,15 +75,20 @@ function bandPaths({ low, high, breaks }, lines) {
   return [s("path", { class: "band", d: area.join("") }), ...edges];
 }
 
+/** @param {Seen[]} points */
+const dotsOf = (points) => s("g", { class: "dots" }, ...points.map(({ px, py }) => s("circle", { cx: r(px), cy: r(py), r: 3 })));
+
 /** Names of the lines with a sample of each, in as many rows as they need. @param {Curve} curve @param {number} width */
 function legend(curve, width) {
   const group = s("g", { class: "key" });
-  if (curve.lines.length < 2 || curve.band) return { group, height: 4 };
+  const lines = seriesOf(curve);
+  if (lines.length < 2 || curve.band) return { group, height: 4 };
   let [left, top] = [58, 12];
-  curve.lines.forEach(({ name }, i) => {
+  lines.forEach(({ name, dots }, i) => {
     const needs = 34 + textWidth(name, SIZE) + 14;
     if (left > 58 && left + needs > width) [left, top] = [58, top + KEY_LINE];
-    group.append(s("path", { class: `line line-${i % 4}`, d: `M${left} ${top}h26` }), s("text", { x: left + 33, y: top + 4 }, name));
+    const sample = dots ? s("g", { class: "dots" }, s("circle", { cx: left + 13, cy: top, r: 3 })) : s("path", { class: `line line-${i % 4}`, d: `M${left} ${top}h26` });
+    group.append(sample, s("text", { x: left + 33, y: top + 4 }, name));
     left += needs;
   });
   return { group, height: top + 8 };
@@ -163,6 +169,7 @@ function markShape(mark, x, y, frame, label) {
       candidates: down.flatMap((top) => [{ x: at + 5, y: top }, { x: at - label.width - 5, y: top }]),
     };
   }
+  if (Array.isArray(mark.x) || Array.isArray(mark.y)) return { shape: null, candidates: [] };
   const [px, py] = [x.place(mark.x ?? NaN), y.place(mark.y ?? NaN)];
   if (!within({ x: 0, y: 0, px, py }, frame)) return { shape: null, candidates: [] };
   const sides = [px + 9, px - label.width - 9];

@@ -2,6 +2,7 @@
 
 import { spreadsheet } from "../numbers.js";
 import { axisName } from "./draw.js";
+import { seriesOf } from "./series.js";
 
 /**
  * @typedef {import("../door.js").Curve} Curve
@@ -16,6 +17,7 @@ text { font: 12px system-ui, sans-serif; fill: #26221c; }
 .line-0 { stroke: #b06a00; } .line-1 { stroke: #466a80; stroke-dasharray: 7 4; }
 .line-2 { stroke: #26221c; stroke-dasharray: 2 3; } .line-3 { stroke: #7a4b7d; stroke-dasharray: 9 3 2 3; }
 .band { fill: #b06a00; fill-opacity: .35; stroke: #b06a00; } .edge { fill: none; stroke: #b06a00; }
+.dots { fill: none; stroke: #26221c; stroke-width: 1.5; }
 .mark { stroke: #5f594f; stroke-dasharray: 4 4; fill: none; } .mark-point { fill: #fff; stroke: #26221c; stroke-width: 2; }
 `;
 
@@ -31,12 +33,13 @@ export function svgText(svg, title) {
 
 /** @param {Curve} curve @returns {{ columns: string[], rows: number[][] | null, long: [string, number, number][] }} */
 export function dataOf(curve) {
-  const [first] = curve.lines;
-  const shared = curve.lines.every(({ x }) => x.length === first?.x.length && x.every((value, i) => value === first.x[i]));
-  const long = curve.lines.flatMap(({ name, x, y }) => x.map((value, i) => /** @type {[string, number, number]} */ ([name, value, y[i] ?? NaN])));
+  const lines = seriesOf(curve);
+  const [first] = lines;
+  const shared = lines.every(({ x }) => x.length === first?.x.length && x.every((value, i) => value === first.x[i]));
+  const long = lines.flatMap(({ name, x, y }) => x.map((value, i) => /** @type {[string, number, number]} */ ([name, value, y[i] ?? NaN])));
   if (!first || !shared) return { columns: ["line", axisName(curve.x), axisName(curve.y)], rows: null, long };
-  const columns = [axisName(curve.x), ...curve.lines.map(({ name }) => (curve.lines.length > 1 ? `${name}, ${axisName(curve.y)}` : axisName(curve.y)))];
-  return { columns, rows: first.x.map((value, i) => [value, ...curve.lines.map(({ y }) => y[i] ?? NaN)]), long };
+  const columns = [axisName(curve.x), ...lines.map(({ name }) => (lines.length > 1 ? `${name}, ${axisName(curve.y)}` : axisName(curve.y)))];
+  return { columns, rows: first.x.map((value, i) => [value, ...lines.map(({ y }) => y[i] ?? NaN)]), long };
 }
 
 /** All points with all their digits, for a spreadsheet. @param {Curve} curve @param {Mark} mark */

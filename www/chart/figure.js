@@ -64,7 +64,7 @@ function onWidth(element, use) {
 /** @param {Curve} curve @param {Drawing} drawing @param {HTMLElement} readout @param {Mark} mark */
 function listen(curve, drawing, readout, mark) {
   const { svg } = drawing;
-  const label = `${curve.title}. Left and right walk along the line${curve.lines.length > 1 ? ", up and down change the line" : ""}.`;
+  const label = `${curve.title}. Left and right walk along the line${drawing.lines.length > 1 ? ", up and down change the line" : ""}.`;
   for (const [name, value] of Object.entries({ tabindex: "0", role: "slider", "aria-label": label, "aria-valuemin": "0" })) svg.setAttribute(name, value);
   const show = (/** @type {Position | null} */ position) => {
     showCursor(drawing, position);

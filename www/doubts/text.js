@@ -64,6 +64,23 @@ export function without(doubts, index) {
 }
 
 /**
+ * Doubts in the place of those that concerned the same numbers.
+ *
+ * @param {Doubts} doubts
+ * @param {Doubt[]} inputs
+ * @param {[number, number, number][]} correlations of the new ones among themselves
+ * @returns {Doubts}
+ */
+export function instead(doubts, inputs, correlations) {
+  const again = new Set(inputs.map(({ pointer }) => pointer));
+  const places = doubts.inputs.flatMap(({ pointer }, index) => (again.has(pointer) ? [index] : []));
+  const kept = places.toReversed().reduce(without, doubts);
+  const first = kept.inputs.length;
+  const shifted = correlations.map(([i, j, r]) => /** @type {[number, number, string]} */ ([first + i, first + j, String(r)]));
+  return { ...kept, inputs: [...kept.inputs, ...inputs], correlations: [...kept.correlations, ...shifted] };
+}
+
+/**
  * As the core takes it: what a person left blank is not there.
  *
  * @param {Texts} texts
