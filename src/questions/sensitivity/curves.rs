@@ -21,7 +21,7 @@ const GAIN_POINTS: usize = 61;
 const COUNTED_POINTS: usize = 41;
 
 /// And where every point is a search that counts.
-const COUNTED_GAIN_POINTS: usize = 13;
+const COUNTED_GAIN_POINTS: usize = 9;
 
 /// The curves of an answer.
 pub fn curves(setup: &Setup, answer: &Answer) -> Vec<Curve> {

@@ -268,7 +268,7 @@ fn find_best_gain(setup: &Setup, here_dbm: Option<f64>) -> Option<BestGainFound>
     })
 }
 
-/// Counting takes a hundred times as long and moves the best gain little: it looks about the Gaussian one, and to a thousandth.
+/// Counting takes a hundred times as long and moves the best gain little: it looks about the Gaussian one, and to a hundredth.
 fn search_best_gain(setup: &Setup) -> BestGain {
     let reach = setup.reach(MOST_GAIN);
     let gaussian = best_gain(|gain| setup.link_at(gain), setup.target, reach);
@@ -280,7 +280,7 @@ fn search_best_gain(setup: &Setup) -> BestGain {
         BestGain::At { gain: about, .. } => {
             let (low, high) = (libm::log((about / 5.0).max(1.0)), libm::log(about * 5.0));
             let at = |ln_gain: f64| power_w(libm::exp(ln_gain)).unwrap_or(f64::INFINITY);
-            let least = minimum(at, low, high, 1e-3);
+            let least = minimum(at, low, high, 5e-3);
             let gain = libm::exp(least.at).max(1.0);
             if least.value.is_finite() { BestGain::At { gain, power_w: least.value } } else { BestGain::None }
         }
