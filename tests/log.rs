@@ -112,7 +112,7 @@ fn nothing_is_guessed_that_cannot_be_known() {
 #[test]
 fn options_are_strict_and_all_faults_come_at_once() {
     let options = json!({
-        "choices": { "delimeter": "tab", "setting": "meter", "good_status": [1], "columns": [{ "index": 0, "role": "voltage" }] },
+        "choices": { "delimeter": "tab", "setting": "meter", "good_status": [1], "columns": [{ "index": 0, "role": "colour" }] },
         "uncertainty": { "relative_standard": -1 },
         "corrected": { "decimal_mark": "dot" },
         "bench": { "sauce": 1 },

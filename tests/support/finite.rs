@@ -4,6 +4,8 @@ use serde_json::Value;
 
 /// The numbers of an answer that may be absent; any other null would be a NaN or an infinity in disguise.
 const MAY_BE_ABSENT: &[&str] = &[
+    "gaussian",
+    "difference_db",
     "average_power_w",
     "average_power_dbm",
     "average_power_q_dbm",
