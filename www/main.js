@@ -7,7 +7,7 @@ import { isXml, openDcc, prepareDcc, saveDcc } from "./dcc.js";
 import { byId, h, inputById, setText } from "./dom.js";
 import { doubtsOf, withDoubts } from "./doubts/text.js";
 import { addDoubt } from "./doubts/view.js";
-import { firstChoices, form, inputOf, labelOf } from "./fields.js";
+import { firstChoices, form, inputOf, labelOf, openFor } from "./fields.js";
 import { fileName, opens, save as saveFile, takesDrops } from "./files.js";
 import { closed, emptyHistory, redone, undone } from "./history.js";
 import { keep, notebookText, onReopen, showNotebook, take } from "./keeping.js";
@@ -209,6 +209,8 @@ toHash();
 if (Object.keys(state.texts).length === 0) {
   put(core.demo(), "Demo bench");
   state.history = emptyHistory();
+  // What was wanting on the empty bench has opened boxes that the demo bench fills.
+  openFor(state.question);
   update();
 }
 showNotebook();

@@ -13,7 +13,7 @@ pub fn show(uncertain: &Uncertain, (shown, curves): (&mut Shown, &mut Vec<Curve>
     let facts = facts(uncertain);
     shown.facts.splice(0..0, facts);
     shown.budgets.insert(0, bars(uncertain));
-    shown.tables.insert(0, table(uncertain));
+    shown.tables.push(table(uncertain));
     shown.doubts.extend(doubts(uncertain));
     shown.notes.extend(notes(uncertain));
     curves.extend(uncertain.monte_carlo.as_ref().map(|run| distribution(uncertain, run)));
@@ -183,8 +183,13 @@ fn amount(value: f64, unit: &str) -> String {
     }
 }
 
+/// The lines of a budget that have an effect; a doubt of what this answer does not hang on says nothing here.
+fn felt(uncertain: &Uncertain) -> impl Iterator<Item = &Contribution> {
+    uncertain.budget.iter().filter(|row| row.contribution > 0.0)
+}
+
 fn bars(uncertain: &Uncertain) -> Budget {
-    let rows = uncertain.budget.iter().map(|row| BudgetRow {
+    let rows = felt(uncertain).map(|row| BudgetRow {
         cause: row.name.clone(),
         figure: amount(row.contribution, uncertain.unit),
         share: row.share,
@@ -218,7 +223,7 @@ fn table(uncertain: &Uncertain) -> Table {
     Table {
         title: format!("Uncertainty budget of the {}", name(uncertain.of)),
         columns: columns.map(str::to_owned).to_vec(),
-        rows: uncertain.budget.iter().map(row).collect(),
+        rows: felt(uncertain).map(row).collect(),
     }
 }
 

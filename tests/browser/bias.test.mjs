@@ -62,7 +62,7 @@ for (const engine of ENGINES) {
 
         test("sees the table for the supply and saves it as CSV", async () => {
             const [table] = shown(bench).tables;
-            const cells = await person.run(() => [...document.querySelectorAll(".table-view tbody tr")].map((row) => [...row.cells].map((cell) => cell.innerText)));
+            const cells = await person.run(() => [...document.querySelector(".table-view").querySelectorAll("tbody tr")].map((row) => [...row.cells].map((cell) => cell.innerText)));
             assert.deepEqual(cells, table.rows);
             await press("Save CSV");
             const text = readFileSync(await waitFor(() => findFile(person.scratch, /\.csv$/)), "utf8");

@@ -102,6 +102,13 @@ for (const engine of ENGINES) {
                 assert.equal(await person.value(pointer), wanted, pointer);
             }
             assert.equal(await person.run(() => document.getElementById("undo").title), "Put this device on the bench");
+            // Its doubts come with it, in the place of those that stood there.
+            const doubts = await person.run(() => JSON.parse(JSON.parse(localStorage.getItem(Object.keys(localStorage).find((key) => key.endsWith("state")))).texts["/uncertainty"]));
+            for (const { pointer, standard } of answer.onto_bench.uncertainty.inputs) {
+                const stated = doubts.inputs.filter((one) => one.pointer === pointer);
+                assert.deepEqual(stated.map((one) => one.standard), [door.write_number(pointer, standard, "auto")], pointer);
+            }
+            assert.equal(doubts.correlations.length, answer.onto_bench.uncertainty.correlations.length);
             await press("Undo");
             assert.equal(await person.value("/detector/avalanche/bias/breakdown_v"), before);
             await press("Redo");

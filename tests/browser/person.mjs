@@ -149,6 +149,11 @@ export class Person extends Session {
 
     /** What an accessibility checker objects to, one line each. */
     async barriers() {
+        // What is said fades, and on its way the checker finds it too faint.
+        await this.until("nothing is being said", () => {
+            const said = document.getElementById("said");
+            return !said || getComputedStyle(said).opacity === "0";
+        });
         await this.inject(readFileSync(createRequire(import.meta.url).resolve("axe-core/axe.min.js"), "utf8"));
         const found = await this.runAsync(async () => {
             const { violations } = await window.axe.run(document, { resultTypes: ["violations"] });

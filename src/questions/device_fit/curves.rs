@@ -17,12 +17,19 @@ struct Look {
     y: Axis,
 }
 
+/// Hz in a GHz.
+const GIGAHERTZ: f64 = 1e9;
+
 /// The curves of an answer.
 pub fn curves(answer: &Answer, currents: Option<&Photocurrents>) -> Vec<Curve> {
     let both = |fit: &Fitted| {
         let look = look(fit.table);
-        // Currents are shown as gains.
-        let unit = if fit.table == "iv" { fit.raw.get(3).copied().unwrap_or(1.0) } else { 1.0 };
+        // Currents are shown as gains, bandwidths in GHz.
+        let unit = match fit.table {
+            "iv" => fit.raw.get(3).copied().unwrap_or(1.0),
+            "bandwidth" => GIGAHERTZ,
+            _ => 1.0,
+        };
         let line = Line { name: "fitted".to_owned(), ..line(fit, currents) };
         let (x, y) = fit.points.iter().map(|point| (point.x, point.measured / unit)).unzip();
         let measured = Mark::Dots { name: "measured".to_owned(), x, y };
@@ -52,7 +59,7 @@ fn line(fit: &Fitted, currents: Option<&Photocurrents>) -> Line {
         }
         ("noise", [k], _) => by_gain().map(|gain| (gain, excess_noise_factor(gain, *k))).collect(),
         ("bandwidth", [flat, product], _) => {
-            by_gain().map(|gain| (gain, bandwidth_hz(gain, *flat, *product))).collect()
+            by_gain().map(|gain| (gain, bandwidth_hz(gain, *flat, *product) / GIGAHERTZ)).collect()
         }
         // A straight line needs its ends only.
         _ => fit
@@ -106,7 +113,7 @@ fn look(table: &str) -> Look {
             names: ["bandwidth_against_gain", "bandwidth_residuals"],
             titles: ["Bandwidth against gain", "What the bandwidth’s fit leaves"],
             x: axis("Gain", "", Scale::Log),
-            y: axis("Bandwidth", "Hz", Scale::Log),
+            y: axis("Bandwidth", "GHz", Scale::Log),
         },
         _ => Look {
             names: ["breakdown_against_temperature", "breakdown_residuals"],

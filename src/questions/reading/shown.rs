@@ -163,8 +163,8 @@ fn doubts(bench: &Bench, given: &Given, answer: &Answer) -> Vec<String> {
     }
     if answer.certificate_uncertainty.is_none() {
         doubts.push(
-            "The certificate’s points state no uncertainty here, so none is given. Add the expanded uncertainties \
-             and k from the certificate before quoting this power."
+            "The certificate’s points state no uncertainty here, so nothing of theirs is in any figure. Add the \
+             expanded uncertainties and k from the certificate before quoting this power."
                 .to_owned(),
         );
     }
