@@ -6,7 +6,7 @@
 use leastlight::statistics::normal::{standard_normal, upper_tail_quantile};
 use leastlight::statistics::shape::Shape;
 use leastlight::statistics::transfer::{coverage_factor, mean_and_deviation};
-use leastlight::uncertainty::gum::{Propagated, propagate, second_order};
+use leastlight::uncertainty::gum::{Propagated, is_straight, propagate, second_order};
 use leastlight::uncertainty::input::{Correlations, Input};
 use leastlight::uncertainty::outcome::{Outcome, tolerance};
 use leastlight::uncertainty::trials::{Plan, Trials};
@@ -101,6 +101,31 @@ fn end_gauge_has_the_printed_second_order_terms() {
     let second = second_order(&mut |x| Some(gauge(x)), &inputs, &first).unwrap();
     // H.1.7: terms of 11.7 nm and 1.7 nm, u = 34 nm; u(θ) is that of θ̄ and Δ together.
     close(second.standard.unwrap(), 33.806_545_4, 1e-7);
+}
+
+#[test]
+fn straight_models_are_told_from_curved_ones() {
+    let straight = |model: &dyn Fn(&[f64]) -> f64, inputs: &[Input]| {
+        let mut model = |x: &[f64]| Some(model(x));
+        let first = propagate(&mut model, inputs, &Correlations::none(inputs.len())).unwrap();
+        is_straight(&mut model, inputs, &first)
+    };
+    // The guides' curved models: by products only, by products with a flat slope, by squares.
+    assert!(!straight(&gauge, &gauge_inputs()));
+    assert!(!straight(&mass, &mass_inputs()));
+    let two = [normal(0.005, INFINITE); 2];
+    for x1 in [0.0, 0.010, 0.050] {
+        assert!(!straight(&|x| (x1 + x[0]).powi(2) + x[1] * x[1], &two), "{x1}");
+    }
+    // Any single product or square of a twentieth of u is seen, wherever it stands among twelve inputs.
+    let twelve = [normal(1.0, INFINITE); 12];
+    assert!(straight(&|x| x.iter().sum(), &twelve));
+    for i in 0..12 {
+        for j in 0..=i {
+            let curved = |x: &[f64]| x.iter().sum::<f64>() + 0.05 * 12f64.sqrt() * x[i] * x[j];
+            assert!(!straight(&curved, &twelve), "{i} {j}");
+        }
+    }
 }
 
 // ---- JCGM 100, H.2: resistance and reactance, measured together ----

@@ -4,6 +4,8 @@
 const MOST_HALVINGS: usize = 24;
 /// Places in the table of extrapolations.
 const MOST_ROWS: usize = 8;
+/// A slope this well known, relative to itself, is known well enough.
+const ENOUGH: f64 = 1e-10;
 
 /// The derivative of `function` at `x`; nothing where it has no value on either side.
 ///
@@ -80,7 +82,7 @@ fn extrapolated(
         // Roundings have taken over: what follows can only be worse.
         let worse = (current[row] - above[row - 1]).abs() >= 2.0 * error;
         above = current;
-        if worse || error == 0.0 {
+        if worse || error <= ENOUGH * best.abs() {
             break;
         }
     }

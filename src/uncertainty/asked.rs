@@ -1,7 +1,7 @@
 //! Any question's answer with its uncertainty.
 
 use super::doubts::{Doubt, Doubts, other_means};
-use super::gum::{NoBudget, Propagated, propagate, second_order};
+use super::gum::{NoBudget, Propagated, is_straight, propagate, second_order};
 use super::outcome::{Outcome, tolerance};
 use super::trials::{Plan, Trials};
 use crate::bench::Bench;
@@ -39,8 +39,8 @@ pub struct Uncertain {
     pub interval: [f64; 2],
     /// Where it comes from, the greatest share first.
     pub budget: Vec<Contribution>,
-    /// What the curvature of the model adds; absent with correlated inputs, and where the model has no value one or two
-    /// standard uncertainties away.
+    /// What the curvature of the model adds; absent where the model is straight over its inputs' uncertainties, with
+    /// correlated inputs, and where the model has no value one or two standard uncertainties away.
     pub second_order: Option<Curvature>,
     /// Where repeated readings have another mean than the number that stands on the bench and is used.
     pub other_means: Vec<OtherMean>,
@@ -145,7 +145,10 @@ pub fn begin(
     let first =
         propagate(&mut model, &inputs, &doubts.correlations).map_err(|why| vec![fault(why, &doubts, at)])?;
     let correlated = doubts.correlations.any();
-    let curvature = if correlated { None } else { second_order(&mut model, &inputs, &first) };
+    let curvature = match correlated || is_straight(&mut model, &inputs, &first) {
+        true => None,
+        false => second_order(&mut model, &inputs, &first),
+    };
     let freedom = first.effective_degrees_of_freedom.unwrap_or(f64::INFINITY);
     let k = coverage_factor(stated.coverage_probability, freedom.max(1.0));
     let expanded = k * first.standard;

@@ -95,6 +95,32 @@ pub fn propagate(
     })
 }
 
+/// Whether a model is straight over its inputs' uncertainties, as far as a few looks tell: all inputs are moved by one
+/// standard uncertainty at once, up and down in eight patterns, and what first order does not foresee is below a
+/// hundredth of u each time. It saves the many evaluations of [`second_order`] where there is nothing to be found.
+pub fn is_straight(model: &mut Model, inputs: &[Input], first: &Propagated) -> bool {
+    let mut deviations = vec![0.0; inputs.len()];
+    (0..PATTERNS).all(|pattern| {
+        let mut foreseen = first.value;
+        for (index, deviation) in deviations.iter_mut().enumerate() {
+            let sign = sign(pattern, index);
+            *deviation = sign * inputs[index].standard;
+            foreseen += sign * first.contributions[index];
+        }
+        model(&deviations).is_some_and(|value| (value - foreseen).abs() <= 0.01 * first.standard)
+    })
+}
+
+/// Patterns of signs, each followed by its opposite.
+const PATTERNS: usize = 8;
+
+/// The sign of an input in a pattern: a Walsh function, by the parity of the bits that its place shares with a mask.
+fn sign(pattern: usize, index: usize) -> f64 {
+    const MASKS: [usize; PATTERNS / 2] = [0b0000, 0b0101, 0b0011, 0b1110];
+    let odd = (index & MASKS[pattern / 2]).count_ones() as usize + pattern;
+    if odd % 2 == 0 { 1.0 } else { -1.0 }
+}
+
 /// What the curvature of a model adds.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct SecondOrder {
