@@ -118,7 +118,7 @@ const PATTERNS: usize = 8;
 fn sign(pattern: usize, index: usize) -> f64 {
     const MASKS: [usize; PATTERNS / 2] = [0b0000, 0b0101, 0b0011, 0b1110];
     let odd = (index & MASKS[pattern / 2]).count_ones() as usize + pattern;
-    if odd % 2 == 0 { 1.0 } else { -1.0 }
+    if odd.is_multiple_of(2) { 1.0 } else { -1.0 }
 }
 
 /// What the curvature of a model adds.
