@@ -3,12 +3,11 @@
 // core for Node.
 
 import assert from "node:assert/strict";
-import { existsSync, readFileSync, readdirSync } from "node:fs";
+import { readFileSync } from "node:fs";
 import { createRequire } from "node:module";
-import { join } from "node:path";
 import { after, before, describe, test } from "node:test";
-import { setTimeout as pause } from "node:timers/promises";
 
+import { waitForFile } from "./downloads.mjs";
 import { ENGINES, start } from "./engines.mjs";
 
 const door = createRequire(import.meta.url)("../../dist/node/leastlight.js");
@@ -65,7 +64,7 @@ for (const engine of ENGINES) {
             const cells = await person.run(() => [...document.querySelector(".table-view").querySelectorAll("tbody tr")].map((row) => [...row.cells].map((cell) => cell.innerText)));
             assert.deepEqual(cells, table.rows);
             await press("Save CSV");
-            const text = readFileSync(await waitFor(() => findFile(person.scratch, /\.csv$/)), "utf8");
+            const text = readFileSync(await waitForFile(person.scratch, /\.csv$/), "utf8");
             const rows = text.trim().split("\r\n").map((line) => line.split(","));
             assert.deepEqual(rows[0], table.columns);
             assert.deepEqual(rows.slice(1), table.rows.map((row) => row.map((cell) => cell.replaceAll("−", "-"))));
@@ -145,21 +144,4 @@ for (const engine of ENGINES) {
             assert.deepEqual(person.listener.heard, []);
         });
     });
-}
-
-/** Downloads take a moment. */
-async function waitFor(find) {
-    for (let tries = 0; tries < 200; tries += 1) {
-        const found = find();
-        if (found) return found;
-        await pause(100);
-    }
-    throw new Error("waited 20 s in vain for a download");
-}
-
-function findFile(folder, pattern) {
-    if (!existsSync(folder)) return undefined;
-    const name = readdirSync(folder).find((one) => pattern.test(one));
-    const file = name && join(folder, name);
-    return file && readFileSync(file).length > 0 ? file : undefined;
 }
