@@ -103,11 +103,13 @@ pub struct MonteCarloResult {
     pub outcome: Outcome,
     /// Where the random numbers began.
     pub seed: u64,
-    /// Numerical tolerance δ of the comparison.
+    /// Numerical tolerance δ of the comparison, for two figures of u.
     pub tolerance: f64,
     /// How far the budget's ends lie from those of the symmetric interval.
     pub differences: [f64; 2],
-    /// Whether both are within δ, so that the budget is confirmed.
+    /// To how many figures of u both ends agree: 2, 1, or 0 where the budget is not confirmed at all.
+    pub confirmed_figures: i32,
+    /// Whether both are within δ, so that the budget is confirmed to two figures of u.
     pub agrees: bool,
 }
 
@@ -189,11 +191,22 @@ impl Uncertain {
     /// Puts a finished run beside the budget; without one value in all trials there is nothing to put.
     pub fn with_trials(self, trials: Trials<'static>, seed: u64) -> Uncertain {
         let monte_carlo = trials.finish().map(|outcome| {
-            // 8.1: δ from two figures of u; both ends must agree.
-            let tolerance = tolerance(self.standard);
             let differences = [0, 1].map(|end| (self.interval[end] - outcome.symmetric[end]).abs());
-            let agrees = differences.iter().all(|difference| *difference <= tolerance);
-            MonteCarloResult { outcome, seed, tolerance, differences, agrees }
+            let within = |figures: i32| {
+                let tolerance = tolerance(self.standard, figures);
+                differences.iter().all(|difference| *difference <= tolerance)
+            };
+            // 8.1: both ends must agree within δ.
+            let confirmed_figures = [2, 1].into_iter().find(|figures| within(*figures)).unwrap_or(0);
+            let tolerance = tolerance(self.standard, 2);
+            MonteCarloResult {
+                outcome,
+                seed,
+                tolerance,
+                differences,
+                confirmed_figures,
+                agrees: confirmed_figures == 2,
+            }
         });
         Uncertain { monte_carlo, ..self }
     }

@@ -113,19 +113,22 @@ fn histogram(values: &[f64], mean: f64, standard: f64) -> Histogram {
     Histogram { from, to, counts, outside }
 }
 
-/// Half of the last of two figures of u: how far two results may lie apart and still be written the same.
+/// Half of the last figure of u: how far two results may lie apart and still be written the same.
 ///
 /// ```text
-/// u = c × 10^l with c of two figures,   δ = ½ × 10^l
+/// u = c × 10^l with c of so many figures,   δ = ½ × 10^l
 /// ```
 ///
+/// * `figures` – meaningful figures of u, one or two
+///
 /// Source: JCGM 101:2008, 7.9.2.
-pub fn tolerance(standard: f64) -> f64 {
+pub fn tolerance(standard: f64, figures: i32) -> f64 {
     if standard <= 0.0 || !standard.is_finite() {
         return 0.0;
     }
     // The exponent after rounding: 0.0996 is 0.10.
-    let text = format!("{standard:.1e}");
+    let decimals = usize::try_from(figures - 1).unwrap_or(0);
+    let text = format!("{standard:.decimals$e}");
     let exponent: i32 = text.split_once('e').and_then(|(_, exponent)| exponent.parse().ok()).unwrap_or(0);
-    0.5 * libm::exp10(f64::from(exponent - 1))
+    0.5 * libm::exp10(f64::from(exponent + 1 - figures))
 }

@@ -277,13 +277,13 @@ fn doubts(uncertain: &Uncertain) -> Vec<String> {
         ))
     }));
     let Some(run) = &uncertain.monte_carlo else { return doubts };
-    if !run.agrees {
+    if run.confirmed_figures == 0 {
         doubts.push(format!(
-            "The trials do not confirm the budget: its ends lie {} and {} from theirs, where {} would be allowed. Quote \
-             the interval of the trials.",
+            "The trials do not confirm the budget: its ends lie {} and {} from theirs, where {} would be allowed for one \
+             figure of u. Quote the interval of the trials.",
             amount(run.differences[0], uncertain.unit),
             amount(run.differences[1], uncertain.unit),
-            amount(run.tolerance, uncertain.unit)
+            amount(crate::uncertainty::outcome::tolerance(uncertain.standard, 1), uncertain.unit)
         ));
     }
     if run.outcome.failed > 0 {
@@ -326,15 +326,18 @@ fn notes(uncertain: &Uncertain) -> Vec<String> {
         }
     ));
     if let Some(run) = &uncertain.monte_carlo {
-        let says = match run.agrees {
-            true => format!(
-                "The budget is validated: both ends of its interval are within {} of those of the trials",
-                amount(run.tolerance, uncertain.unit)
-            ),
-            false => "The budget is not validated by the trials".to_owned(),
+        let ends = format!(
+            "the ends of its interval lie {} and {} from those of the trials",
+            amount(run.differences[0], uncertain.unit),
+            amount(run.differences[1], uncertain.unit)
+        );
+        let says = match run.confirmed_figures {
+            2 => format!("The budget is validated to two figures of u: {ends}"),
+            1 => format!("The budget is validated to one figure of u, not to two: {ends}"),
+            _ => format!("The budget is not validated by the trials: {ends}"),
         };
         notes.push(format!(
-            "Trials by JCGM 101:2008 with the generator xoshiro256++ from seed {}. {says} (clause 8, two figures of u). A \
+            "Trials by JCGM 101:2008 with the generator xoshiro256++ from seed {}. {says} (clause 8). A \
              normal input with few degrees of freedom is drawn from Student’s t; correlated inputs that are not normal \
              hang together through normal values.",
             run.seed

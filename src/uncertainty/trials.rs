@@ -163,7 +163,7 @@ impl<'m> Trials<'m> {
             let squares: f64 = self.blocks.iter().map(|block| (block[of] - mean) * (block[of] - mean)).sum();
             (squares / (count * (count - 1.0))).sqrt()
         };
-        let tolerance = super::outcome::tolerance(average(1));
+        let tolerance = super::outcome::tolerance(average(1), 2);
         self.stable = (0..4).all(|of| 2.0 * spread(of) <= tolerance);
     }
 }

@@ -75,7 +75,7 @@ for (const engine of ENGINES) {
         test("adds a doubt at a field, types its amount where the caret stands, and takes it away", async () => {
             await person.run(() => document.querySelector('[data-doubt="/meter/certificate/scale"]').click());
             assert.equal(await person.run(() => document.activeElement.dataset.key), "12-half_width");
-            await person.until("what is missing is said", () => document.getElementById("doubt-12-fault")?.innerText.includes("is needed"));
+            await person.until("what is missing is said", () => document.getElementById("doubt-12-fault")?.innerText.includes("needs an amount"));
             await into('[data-key="12-half_width"]', "1 %");
             const bench = door.demo();
             bench.uncertainty.inputs.push({ pointer: "/meter/certificate/scale", half_width: 0.01, relative: true });

@@ -170,7 +170,7 @@ fn stated(map: &Tree, at: &str, row: &Field, k: Option<f64>, reader: &mut Reader
     let given: Vec<&str> = keys.into_iter().filter(|key| !is_absent(map.get(key), reader)).collect();
     let [key] = given.as_slice() else {
         let sentence = match given.is_empty() {
-            true => format!("How large the doubt of {} is is needed: one of {}.", row.name, keys.join(", ")),
+            true => format!("The doubt of {} needs an amount: one of {}.", row.name, keys.join(", ")),
             false => format!(
                 "The doubt of {} is stated in several ways, {}; one is enough.",
                 row.name,
