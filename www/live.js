@@ -98,7 +98,8 @@ export function update() {
   showSummary(showFaults(faults.filter((fault) => !ofDoubts.includes(fault)), all, texts));
   showDoubts({ texts, question, numbers: numbersOf(question), usual, faults: ofDoubts, understood, change });
   showOffers();
-  showDoubtful((pointer) => shortly(doubtsOf(texts), pointer));
+  const doubts = doubtsOf(texts);
+  showDoubtful((pointer) => shortly(doubts, pointer));
   const name = job ? state.question : question.name;
   const { answer, waits } = job?.follow() ?? asked("blocking" in rest ? rest : { answer: null, blocking: [] }, name);
   if (answer) {

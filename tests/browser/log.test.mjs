@@ -276,15 +276,18 @@ async function waitFor(what, find) {
     throw new Error(`waited 120 s in vain until ${what}`);
 }
 
-/** A file that has its whole length: it does not grow any more. */
+/** A file that has its whole length: it has not grown for a while, for a busy browser writes with pauses. */
 function findFile(path, pattern) {
     const name = existsSync(path) && readdirSync(path).find((one) => pattern.test(one));
     const file = name && join(path, name);
     const size = file ? statSync(file).size : 0;
-    const complete = size > 0 && sizes.get(file) === size;
-    sizes.set(file, size);
-    return complete ? file : undefined;
+    const last = seen.get(file);
+    if (last?.size !== size) seen.set(file, { size, since: Date.now() });
+    return size > 0 && last?.size === size && Date.now() - last.since > STILL_MS ? file : undefined;
 }
 
-/** The size of each download when it was looked at last. */
-const sizes = new Map();
+/** So long a download must stand still to be taken as finished. */
+const STILL_MS = 2000;
+
+/** The size of each download when it was looked at last, and since when it is that. */
+const seen = new Map();

@@ -51,7 +51,7 @@ export function showDoubts(around) {
     redraw(doubts, mine);
   }
   fill(doubts);
-  showWrong(around.faults);
+  showWrong(around.faults, doubts);
 }
 
 /** @param {string} pointer */
@@ -193,8 +193,8 @@ function fill(doubts) {
   }
 }
 
-/** @param {Fault[]} faults */
-function showWrong(faults) {
+/** @param {Fault[]} faults @param {Doubts} doubts */
+function showWrong(faults, doubts) {
   const places = /** @type {NodeListOf<HTMLElement>} */ (byId("doubts-rows").querySelectorAll(".fault"));
   for (const place of places) {
     const own = faults.filter(({ pointer }) => placeOf(pointer) === place.id);
@@ -210,7 +210,7 @@ function showWrong(faults) {
   }
   for (const note of /** @type {NodeListOf<HTMLElement>} */ (byId("doubts-rows").querySelectorAll(".doubt-row > .note"))) {
     const index = Number(note.id.split("-")[1]);
-    const doubt = doubtsOf(now.texts).inputs[index];
+    const doubt = doubts.inputs[index];
     const usual = now.usual.find(({ name, pointer }) => name === doubt?.name && pointer === doubt?.pointer);
     const understood = Object.entries(now.understood).find(([pointer]) => pointer === `/uncertainty/inputs/${index}/readings`)?.[1];
     setText(note, [doubt && `Of ${numberLabel(doubt.pointer)}`, understood, usual?.note].filter(Boolean).join(". "));
