@@ -43,7 +43,7 @@ wasm_tests() { # NAME=VALUE…, which say where they run
 }
 
 # Native answers of an earlier run would speak for a core that is no more.
-rm -f target/replay.jsonl
+rm -f target/replay.jsonl target/replay-log.json
 
 step "browsers and drivers are here" install_browsers
 step "source is formatted" cargo fmt --all --check
