@@ -10,6 +10,7 @@ import { bestPlace, overlap } from "../../www/chart/labels.js";
 import { FACTOR, READINGS, REFERENCE, asked, ownerName } from "../../www/comparison.js";
 import { USUAL, contributionsOf, isProposed, withContributions } from "../../www/contributions.js";
 import { administrationOf, ownerName as administrationOwner } from "../../www/dcc-administration.js";
+import { doubtsOf, instead, withDoubts } from "../../www/doubts/text.js";
 import { csvOf, fileName } from "../../www/files.js";
 import { worthSaying } from "../../www/fields.js";
 import { closed, emptyHistory, recorded, redone, undone } from "../../www/history.js";
@@ -242,4 +243,21 @@ describe("what a digital certificate says beside its numbers", () => {
         assert.equal(administrationOwner("/administration/item", names), "dcc/item/name");
         assert.equal(administrationOwner("/meter/certificate/points", names), null);
     });
+});
+
+test("doubts of somebody else's making do no harm", () => {
+    const none = doubtsOf({});
+    for (const text of ["{", "7", "null", '"x"', '{"inputs":3}', '{"inputs":[null]}', '{"inputs":[],"correlations":[1]}']) {
+        assert.deepEqual(doubtsOf({ "/uncertainty": text }), none, text);
+    }
+    const kept = { ...none, inputs: [{ pointer: "/path/loss_db", half_width: "0.1 dB" }] };
+    assert.deepEqual(doubtsOf(withDoubts({}, kept)), kept);
+});
+
+test("a fitted device's doubts stand in the place of older ones, and correlations keep their partners", () => {
+    const doubt = (pointer, amount) => ({ pointer, standard: amount });
+    const before = { ...doubtsOf({}), inputs: [doubt("/a", "1"), doubt("/b", "2"), doubt("/c", "3")], correlations: [[0, 1, "0.5"], [0, 2, "0.3"]] };
+    const after = instead(before, [doubt("/b", "7"), doubt("/d", "8")], [[0, 1, -0.4]]);
+    assert.deepEqual(after.inputs, [doubt("/a", "1"), doubt("/c", "3"), doubt("/b", "7"), doubt("/d", "8")]);
+    assert.deepEqual(after.correlations, [[0, 1, "0.3"], [2, 3, "-0.4"]]);
 });

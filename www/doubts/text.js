@@ -16,8 +16,20 @@ const TRIALS = { trials: "1000000", seed: "1", adaptive: false };
 
 /** @param {Texts} texts @returns {Doubts} */
 export function doubtsOf(texts) {
-  const found = texts[DOUBTS] ? JSON.parse(texts[DOUBTS]) : {};
+  const found = sound(texts[DOUBTS] ?? "");
   return { of: null, inputs: [], correlations: [], coverage_probability: 0.95, ...found, monte_carlo: { ...TRIALS, ...found.monte_carlo } };
+}
+
+/** What a store or a file of somebody else's making holds may be anything. @param {string} text @returns {Partial<Doubts>} */
+function sound(text) {
+  try {
+    const found = JSON.parse(text || "{}");
+    const lists = [found.inputs ?? [], found.correlations ?? []];
+    const good = found !== null && typeof found === "object" && !Array.isArray(found) && lists.every(Array.isArray) && lists[0].every((/** @type {any} */ one) => typeof one?.pointer === "string") && lists[1].every(Array.isArray);
+    return good ? found : {};
+  } catch {
+    return {};
+  }
 }
 
 /** @param {Texts} texts @param {Doubts} doubts @returns {Texts} */
